@@ -30,9 +30,9 @@ struct Pose {
     double heading = 0.0; ///< rad
 };
 
-/// Reading of the sensor over [from_s, to_s] for any motion, by composite Gauss-Legendre steps on
-/// the pose's differences: each step is treated as a Sweep, which is exact when pivot and heading
-/// share one time profile, and of second order in the step otherwise.
+/// Reading of the sensor over [from_s, to_s] for any motion. Each step between two poses is taken
+/// as a Sweep, which is exact when pivot and heading share one time profile, and of second order
+/// in the step otherwise.
 /// @param steps  >= 1
 [[nodiscard]] Point integrated_reading(const std::function<Pose(double)>& pose, Point sensor,
                                        double from_s, double to_s, int steps);

@@ -49,13 +49,15 @@ public:
 private:
     template <class Position>
     void sample(const Position& position, double duration_s, PointerTime start, ReportBatch& batch);
-    [[nodiscard]] PointerTime stamp(double time_us);
-    void emit_motion(double time_us, std::int32_t dx, std::int32_t dy, ReportBatch& batch);
+    /// Time from `start` to the first poll at or after it, us.
+    [[nodiscard]] double until_poll_us(PointerTime start) const;
+    [[nodiscard]] PointerTime stamp(PointerTime start, double after_us);
     Report& append(PointerTime time, ReportBatch& batch);
 
     PointerIndex m_pointer;
     Electronics m_electronics;
     Random m_random;
+    double m_interval_us;
     double m_clock_phase;      ///< share of an interval
     double m_step_x, m_step_y; ///< position within a step, counts, [0, 1)
     PointerTime m_last{};
