@@ -9,6 +9,7 @@
 #include <filesystem>
 #include <optional>
 #include <string>
+#include <string_view>
 #include <vector>
 
 namespace sagitta::config {
@@ -18,6 +19,9 @@ struct PointerSettings {
     std::string name; ///< the pointer's name; * stands for any text
     std::optional<estimator::Cpi> cpi;
     estimator::Gain gain = estimator::Gain::unity();
+    /// The desktop brings faster pointers down to this CPI before its gain table counts; nothing:
+    /// the table takes the pointer's own counts.
+    std::optional<estimator::Cpi> gain_normalised_to;
     bool ignore = false; ///< never open it
 };
 
@@ -39,10 +43,16 @@ struct Settings {
 
 /// Reads a config file. Every error names file, line, column, and the nearest valid key.
 /// @return not_found, no_permission, bad_format (not YAML, not UTF-8, a folder, nested too deep),
-///         bad_value (unknown key, wrong type, out of range)
+///         bad_value (unknown key, wrong type, out of range), io
 [[nodiscard]] estimator::Result<Settings> read_settings(const std::filesystem::path& file);
 
-/// The file to read: $XDG_CONFIG_HOME/sagitta/sagitta.yaml, ~/.config/..., /etc/sagitta/...;
+/// The same for content already in memory.
+/// @param file  named in messages; relative file names of gain tables start at its folder
+[[nodiscard]] estimator::Result<Settings> parse_settings(std::string_view text,
+                                                         const std::filesystem::path& file);
+
+/// The file to read: $XDG_CONFIG_HOME/sagitta/sagitta.yaml (~/.config when that is not
+/// set), else /etc/sagitta/sagitta.yaml;
 /// nothing when none exists, and the defaults hold.
 [[nodiscard]] std::optional<std::filesystem::path> find_settings_file();
 
