@@ -31,7 +31,9 @@ Result<Gain> Gain::table(std::vector<GainPoint> points) {
     return Gain{std::move(points)};
 }
 
-Gain Gain::unity() { return Gain{{GainPoint{MillimetresPerSecond::zero(), 1.0}}}; }
+Gain Gain::unity() {
+    return Gain{{GainPoint{MillimetresPerSecond::zero(), 1.0}}};
+}
 
 double Gain::factor_at(MillimetresPerSecond speed) const noexcept {
     const auto above = std::upper_bound(

@@ -22,28 +22,28 @@ using FlagSet = std::uint8_t;
 /// Every measure of one movement. Lengths in px live in the screen plane, in mm in the hand plane.
 /// Formulas and sources stand with the functions that compute them.
 struct Scores {
-    Pixels distance = Pixels::zero();       ///< D
-    Degrees direction = Degrees::zero();    ///< 0 = right, 90 = away from the person, [0, 360)
-    Micros movement_time{};                 ///< MT, dwell included
-    Micros dwell{};                         ///< last motion report to press
-    Pixels path = Pixels::zero();           ///< L
-    Pixels error = Pixels::zero();          ///< ME
-    Pixels offset = Pixels::zero();         ///< MO, + = left of the task axis
-    Pixels variability = Pixels::zero();    ///< MV
+    Pixels distance = Pixels::zero();    ///< D
+    Degrees direction = Degrees::zero(); ///< 0 = right, 90 = away from the person, [0, 360)
+    Micros movement_time{};              ///< MT, dwell included
+    Micros dwell{};                      ///< last motion report to press
+    Pixels path = Pixels::zero();        ///< L
+    Pixels error = Pixels::zero();       ///< ME
+    Pixels offset = Pixels::zero();      ///< MO, + = left of the task axis
+    Pixels variability = Pixels::zero(); ///< MV
     Pixels max_deviation = Pixels::zero();
-    std::uint16_t axis_crossings = 0;       ///< TAC
-    std::uint16_t direction_changes = 0;    ///< MDC
-    std::uint16_t orthogonal_changes = 0;   ///< ODC
+    std::uint16_t axis_crossings = 0;     ///< TAC
+    std::uint16_t direction_changes = 0;  ///< MDC
+    std::uint16_t orthogonal_changes = 0; ///< ODC
     MillimetresPerSecond peak_speed = MillimetresPerSecond::zero();
     Micros time_to_peak{};
     std::uint16_t submovements = 0;
-    double primary_fraction = 0.0;              ///< of D, along the task axis
-    Pixels primary_lateral = Pixels::zero();    ///< across the task axis, + = left
-    Degrees initial_angle = Degrees::zero();    ///< + = left of the task axis, (-180, 180]
-    double smoothness_sparc = 0.0;              ///< <= 0, dimensionless
-    double smoothness_ldlj = 0.0;               ///< dimensionless
+    double primary_fraction = 0.0;           ///< of D, along the task axis
+    Pixels primary_lateral = Pixels::zero(); ///< across the task axis, + = left
+    Degrees initial_angle = Degrees::zero(); ///< + = left of the task axis, (-180, 180]
+    double smoothness_sparc = 0.0;           ///< <= 0, dimensionless
+    double smoothness_ldlj = 0.0;            ///< dimensionless
     Millimetres hand_travel = Millimetres::zero();
-    std::uint32_t reports = 0;              ///< motion reports
+    std::uint32_t reports = 0; ///< motion reports
     FlagSet flags = 0;
 
     [[nodiscard]] double path_ratio() const noexcept { return path / distance; }

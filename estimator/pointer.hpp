@@ -26,8 +26,8 @@ struct PointerDescription {
     std::uint16_t bus = 0;
     std::uint16_t vendor = 0;
     std::uint16_t product = 0;
-    std::optional<Cpi> udev_cpi;                ///< from MOUSE_DPI
-    std::optional<AxisResolution> resolution;   ///< absolute devices only
+    std::optional<Cpi> udev_cpi;              ///< from MOUSE_DPI
+    std::optional<AxisResolution> resolution; ///< absolute devices only
 };
 
 /// "mouse", "trackball", "pointing_stick", "touchpad", "absolute".

@@ -63,13 +63,13 @@ private:
     double m_value;
 };
 
-using Pixels = Quantity<struct PixelsUnit>;                   ///< px, screen plane
-using Millimetres = Quantity<struct MillimetresUnit>;         ///< mm, hand plane
-using MillimetresPerSecond = Quantity<struct HandSpeedUnit>;  ///< mm/s, hand plane
-using Degrees = Quantity<struct DegreesUnit>;                 ///< deg, counter-clockwise
-using Cpi = Quantity<struct CpiUnit>;                         ///< counts per inch
-using Bits = Quantity<struct BitsUnit>;                       ///< index of difficulty
-using BitsPerSecond = Quantity<struct BitsPerSecondUnit>;     ///< throughput
+using Pixels = Quantity<struct PixelsUnit>;                  ///< px, screen plane
+using Millimetres = Quantity<struct MillimetresUnit>;        ///< mm, hand plane
+using MillimetresPerSecond = Quantity<struct HandSpeedUnit>; ///< mm/s, hand plane
+using Degrees = Quantity<struct DegreesUnit>;                ///< deg, counter-clockwise
+using Cpi = Quantity<struct CpiUnit>;                        ///< counts per inch
+using Bits = Quantity<struct BitsUnit>;                      ///< index of difficulty
+using BitsPerSecond = Quantity<struct BitsPerSecondUnit>;    ///< throughput
 
 constexpr double k_mm_per_inch = 25.4; // exact, by the international definition of the inch
 

@@ -1,0 +1,83 @@
+#include "estimator/scorer.hpp"
+
+#include "estimator/deviation.hpp"
+#include "estimator/smoothness.hpp"
+#include "estimator/submovements.hpp"
+#include "estimator/turns.hpp"
+
+#include <algorithm>
+#include <cmath>
+#include <numbers>
+#include <span>
+
+namespace sagitta::estimator {
+namespace {
+
+constexpr double k_degrees_per_radian = 180.0 / std::numbers::pi;
+
+double interpolate(std::span<const double> values, double place) {
+    const double last = static_cast<double>(values.size() - 1);
+    const double inside = std::clamp(place, 0.0, last);
+    const auto below = std::min(static_cast<std::size_t>(inside), values.size() - 2);
+    const double share = inside - static_cast<double>(below);
+    return values[below] + share * (values[below + 1] - values[below]);
+}
+
+} // namespace
+
+Scores Scorer::score(const Path& path, const ScoreRules& rules) {
+    Scores scores;
+    const double distance = std::hypot(path.press_x_px, path.press_y_px);
+    const double cosine = path.press_x_px / distance;
+    const double sine = path.press_y_px / distance;
+    const double direction = std::atan2(sine, cosine) * k_degrees_per_radian;
+    scores.distance = Pixels::of(distance);
+    // A direction just below 0 rounds up to 360, which is 0.
+    const double turned = direction < 0.0 ? direction + 360.0 : direction;
+    scores.direction = Degrees::of(turned < 360.0 ? turned : 0.0);
+    scores.path = Pixels::of(path.length_px);
+    scores.hand_travel = Millimetres::of(path.length_mm);
+    scores.peak_speed = MillimetresPerSecond::of(path.peak_speed_mm_s);
+    scores.time_to_peak = std::chrono::duration_cast<Micros>(path.peak_time - path.start);
+
+    const std::size_t first = path.first;
+    const std::size_t size = path.last - path.first + 1;
+    m_along.resize(size);
+    m_across.resize(size);
+    m_along_velocity.resize(size);
+    for (std::size_t i = 0; i < size; ++i) {
+        const double x = path.x_px[first + i];
+        const double y = path.y_px[first + i];
+        m_along[i] = x * cosine + y * sine;
+        m_across[i] = y * cosine - x * sine;
+        m_along_velocity[i] = path.vx_mm_s[first + i] * cosine + path.vy_mm_s[first + i] * sine;
+    }
+
+    const Deviation strayed = deviation(m_across);
+    scores.error = strayed.error;
+    scores.offset = strayed.offset;
+    scores.variability = strayed.variability;
+    scores.max_deviation = strayed.max_deviation;
+
+    const double band = std::max(rules.dead_band.value(), rules.dead_band_share * distance);
+    scores.axis_crossings = axis_crossings(m_across, band);
+    scores.direction_changes = turning_points(m_across, band);
+    scores.orthogonal_changes = turning_points(m_along, band);
+
+    const Submovements pieces = find_submovements(m_along_velocity);
+    scores.submovements = pieces.count;
+    scores.primary_fraction = interpolate(m_along, pieces.primary_end) / distance;
+    scores.primary_lateral = Pixels::of(interpolate(m_across, pieces.primary_end));
+
+    const double at_peak = path.peak_sample - static_cast<double>(first);
+    scores.initial_angle =
+        Degrees::of(std::atan2(interpolate(m_across, at_peak), interpolate(m_along, at_peak)) *
+                    k_degrees_per_radian);
+
+    const std::span<const double> speed{path.speed_mm_s.data() + first, size};
+    scores.smoothness_sparc = spectral_arc_length(speed, k_sample_rate_hz);
+    scores.smoothness_ldlj = log_dimensionless_jerk(speed);
+    return scores;
+}
+
+} // namespace sagitta::estimator
