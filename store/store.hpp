@@ -8,12 +8,14 @@
 #include "estimator/pointer.hpp"
 #include "estimator/result.hpp"
 
+#include <chrono>
 #include <cstdint>
 #include <filesystem>
 #include <functional>
 #include <memory>
 #include <optional>
 #include <string>
+#include <string_view>
 #include <vector>
 
 namespace sagitta::store {
@@ -43,7 +45,7 @@ struct StoredCondition {
 };
 
 struct StoredMovement {
-    UtcTime start;
+    UtcTime start; ///< press - scores.movement_time, which is how the file keeps it
     UtcTime press;
     PointerId pointer;
     ConditionId condition;
@@ -60,9 +62,21 @@ struct StoredHour {
 };
 
 enum class EventKind : std::uint8_t {
-    started, stopped, paused, resumed, plugged, unplugged, lost_reports, clock_step, slept,
-    set_aside, replayed, settings
+    started,
+    stopped,
+    paused,
+    resumed,
+    plugged,
+    unplugged,
+    lost_reports,
+    clock_step,
+    slept,
+    set_aside,
+    replayed,
+    settings
 };
+/// The event's name in stores, exports and JSON, e.g. "lost_reports".
+[[nodiscard]] std::string_view to_text(EventKind kind);
 
 struct StoredEvent {
     UtcTime time;
@@ -85,7 +99,16 @@ struct Opened;
 
 enum class Mode { read_only, read_write };
 
-/// Which rows to read: times in [from, to), all pointers unless one is named.
+struct OpenOptions {
+    /// How long opening, reading and writing wait for another program's lock.
+    std::chrono::milliseconds busy_timeout{3000};
+    /// Reads every page to find damage, about 1 s for 2 million movements; without it only what
+    /// writing touches is examined. For use after ErrorCode::damaged, and for `check`.
+    bool thorough = false;
+};
+
+/// Which rows to read: times in [from, to), all pointers unless one is named. The time of a
+/// movement is its press, of an hour its start.
 struct Selection {
     std::optional<UtcTime> from;
     std::optional<UtcTime> to;
@@ -94,12 +117,16 @@ struct Selection {
 
 class Store {
 public:
-    /// Opens the file, creating it (mode 0600, parents 0700) when writing. A damaged file is set
-    /// aside under a dated name and replaced by a fresh one when writing.
+    struct Connection; ///< the database behind it, known to this folder only
+
+    /// Opens the file, creating it (mode 0600, parents 0700) when writing; an empty file counts as
+    /// new. A damaged file is set aside under a dated name and replaced by a fresh one when
+    /// writing, which EventKind::set_aside records. Reading never changes the file.
     /// @param now  stamp for the dated name
-    /// @return not_found (reading), no_permission, newer_version, damaged (reading), busy, io
+    /// @return not_found (reading), no_permission, newer_version, bad_format (a folder, or another
+    ///         program's SQLite file), damaged (reading), busy, no_space, io
     [[nodiscard]] static Result<Opened> open(const std::filesystem::path& file, Mode mode,
-                                             UtcTime now);
+                                             UtcTime now, const OpenOptions& options = {});
     Store(Store&&) noexcept;
     Store& operator=(Store&&) noexcept;
     ~Store();
@@ -107,14 +134,15 @@ public:
     /// The pointer's row, made when new. Name, bus, vendor, product and origin identify it; a
     /// changed kind, CPI or CPI source is updated in place.
     [[nodiscard]] Result<PointerId> pointer(const estimator::PointerDescription& description,
-                                            const estimator::Calibration& calibration,
-                                            UtcTime now);
+                                            const estimator::Calibration& calibration, UtcTime now);
     /// The condition's row, made when new.
     [[nodiscard]] Result<ConditionId> condition(const std::string& label);
 
     /// Writes a batch in one transaction.
     /// @return already_there when a movement of the same pointer and press time exists,
-    ///         no_space, busy, no_permission, io; nothing of the batch is written then
+    ///         no_space, busy, no_permission, io, not_found when the file was moved or deleted
+    ///         since it was opened, damaged (open it again, thoroughly: that sets it aside);
+    ///         nothing of the batch is written then
     [[nodiscard]] Result<void> append(const Batch& batch);
     /// Deletes single movements pressed before `keep_from`; hours stay.
     /// @return rows deleted
@@ -122,7 +150,9 @@ public:
 
     [[nodiscard]] Result<std::vector<StoredPointer>> pointers() const;
     [[nodiscard]] Result<std::vector<StoredCondition>> conditions() const;
-    /// Visits rows in the order of time, one at a time; memory does not grow with the file.
+    /// Visits rows in the order of time, one at a time; memory does not grow with the file. All
+    /// rows are of one moment, whatever is written meanwhile.
+    /// @return damaged, busy, io; rows visited before are valid
     [[nodiscard]] Result<void>
     for_each_movement(const Selection& selection,
                       const std::function<void(const StoredMovement&)>& visit) const;
@@ -136,7 +166,6 @@ public:
     [[nodiscard]] const std::filesystem::path& file() const;
 
 private:
-    struct Connection;
     explicit Store(std::unique_ptr<Connection> connection);
     std::unique_ptr<Connection> m_connection;
 };
@@ -147,7 +176,8 @@ struct Opened {
     std::optional<std::filesystem::path> set_aside;
 };
 
-/// $XDG_DATA_HOME/sagitta/sagitta.db, or ~/.local/share/sagitta/sagitta.db.
+/// $XDG_DATA_HOME/sagitta/sagitta.db, or ~/.local/share/sagitta/sagitta.db when that is unset,
+/// empty or not absolute.
 [[nodiscard]] std::filesystem::path default_file();
 
 } // namespace sagitta::store
