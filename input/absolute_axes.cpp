@@ -4,43 +4,18 @@ namespace sagitta::input {
 
 namespace {
 
+// Places in k_contact_codes, as bits.
 constexpr std::uint32_t k_touch = 1u << 0;
 constexpr std::uint32_t k_finger = 1u << 1;
-constexpr std::uint32_t k_more_fingers = 0x3cu; ///< two to five, one bit each
-constexpr std::uint32_t k_pen = 0x1fc0u;        ///< pen, rubber, brush, ..., lens
+constexpr std::uint32_t k_more_fingers = 0x003cu;
+constexpr std::uint32_t k_pen = 0x1fc0u;
 
 /// The bit of a contact code, 0 for any other code.
 std::uint32_t contact_bit(std::uint16_t code) {
-    switch (code) {
-    case BTN_TOUCH:
-        return k_touch;
-    case BTN_TOOL_FINGER:
-        return k_finger;
-    case BTN_TOOL_DOUBLETAP:
-        return 1u << 2;
-    case BTN_TOOL_TRIPLETAP:
-        return 1u << 3;
-    case BTN_TOOL_QUADTAP:
-        return 1u << 4;
-    case BTN_TOOL_QUINTTAP:
-        return 1u << 5;
-    case BTN_TOOL_PEN:
-        return 1u << 6;
-    case BTN_TOOL_RUBBER:
-        return 1u << 7;
-    case BTN_TOOL_BRUSH:
-        return 1u << 8;
-    case BTN_TOOL_PENCIL:
-        return 1u << 9;
-    case BTN_TOOL_AIRBRUSH:
-        return 1u << 10;
-    case BTN_TOOL_MOUSE:
-        return 1u << 11;
-    case BTN_TOOL_LENS:
-        return 1u << 12;
-    default:
-        return 0;
-    }
+    for (std::size_t i = 0; i < k_contact_codes.size(); ++i)
+        if (k_contact_codes[i] == code)
+            return 1u << i;
+    return 0;
 }
 
 } // namespace

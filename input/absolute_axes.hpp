@@ -11,6 +11,12 @@
 
 namespace sagitta::input {
 
+/// Codes that tell of contact: one finger, two to five, pens and what else tablets know.
+constexpr std::array<std::uint16_t, 13> k_contact_codes{
+    BTN_TOUCH,         BTN_TOOL_FINGER, BTN_TOOL_DOUBLETAP, BTN_TOOL_TRIPLETAP, BTN_TOOL_QUADTAP,
+    BTN_TOOL_QUINTTAP, BTN_TOOL_PEN,    BTN_TOOL_RUBBER,    BTN_TOOL_BRUSH,     BTN_TOOL_PENCIL,
+    BTN_TOOL_AIRBRUSH, BTN_TOOL_MOUSE,  BTN_TOOL_LENS};
+
 /// Turns ABS_X and ABS_Y into steps, in device units.
 ///
 /// The kernel sends an axis only when it changes (Documentation/input/event-codes.rst), so the
@@ -50,7 +56,7 @@ private:
 
     estimator::PointerKind m_kind;
     Axis m_x, m_y;
-    std::uint32_t m_contacts = 0;  ///< bits, see contact_bit()
+    std::uint32_t m_contacts = 0;  ///< a bit for each of k_contact_codes
     bool m_sends_contacts = false; ///< seen at least once
     bool m_new_contact = false;    ///< within this packet
 };

@@ -22,20 +22,28 @@ struct PointerNode {
 
 /// Lists pointers: by udev's ID_INPUT_* marks where udev runs, else by capability through sysfs
 /// (/sys/class/input/eventN/device/capabilities), so that keyboards are never opened to find out
-/// what they are. Nodes that are keyboards too (a receiver's second interface) are left out.
+/// what they are. Ordered by the number of the node. Nodes that are keyboards too (a receiver's
+/// second interface) are left out.
+/// @return an empty list when there is none; io
 [[nodiscard]] estimator::Result<std::vector<PointerNode>> list_pointers();
 
-/// One open pointer: CLOCK_MONOTONIC, event mask set, so that no code but motion, wheels and
-/// pointer buttons reaches this process.
+/// Lists the nodes that are a pointer and a keyboard at once. They are never opened; whoever tells
+/// why a pointer is missing names them.
+[[nodiscard]] estimator::Result<std::vector<PointerNode>> list_keyboard_pointers();
+
+/// One open pointer: CLOCK_MONOTONIC, event mask set, so that no code but motion, wheels, contact
+/// and pointer buttons reaches this process.
 class EvdevPointer {
 public:
-    /// @return not_found, no_permission, io
+    /// @return not_found; no_permission, also for a keyboard; io
     [[nodiscard]] static estimator::Result<EvdevPointer> open(const PointerNode& node,
                                                               estimator::PointerIndex index);
     EvdevPointer(EvdevPointer&&) noexcept;
     EvdevPointer& operator=(EvdevPointer&&) noexcept;
     ~EvdevPointer();
 
+    /// As listed, with the resolution of the axes if the device tells it.
+    [[nodiscard]] const estimator::PointerDescription& description() const;
     /// For the event loop; stays owned by this object.
     [[nodiscard]] int file_descriptor() const;
     /// Appends what the kernel holds now. Never blocks.
