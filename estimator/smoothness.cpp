@@ -6,6 +6,7 @@
 #include <cstddef>
 #include <numbers>
 #include <numeric>
+#include <utility>
 
 namespace sagitta::estimator {
 namespace {
@@ -16,10 +17,10 @@ constexpr std::size_t k_padding = 16; // 2^4
 
 /// Magnitudes of a zero-padded discrete Fourier transform, a few neighbouring bins at a time, by
 /// Goertzel's recurrence. Only a twentieth of the bins is wanted, so this costs less than a full
-/// transform, needs no table and no memory.
+/// transform, and needs no table and no memory.
 class Spectrum {
 public:
-    static constexpr std::size_t k_block = 8;
+    static constexpr std::size_t k_block = 12; // as many as hide the recurrence's latency
     using Block = std::array<double, k_block>;
 
     Spectrum(std::span<const double> signal, std::size_t padded)
@@ -27,42 +28,47 @@ public:
 
     /// Magnitudes of the bins first .. first + k_block - 1.
     [[nodiscard]] Block magnitudes(std::size_t first) const {
-        // Two bins a register. 2 cos(theta) = 2 - 4 sin^2(theta / 2) keeps its digits at small
-        // angles, and so does the closing formula.
-        using Pair = double __attribute__((vector_size(16)));
-        constexpr std::size_t pairs = k_block / 2;
-        Pair chord[pairs];
-        Pair factor[pairs];
-        Pair last[pairs];
-        Pair before[pairs];
-        for (std::size_t p = 0; p < pairs; ++p) {
-            const double low = 2.0 * std::sin(m_half_step * static_cast<double>(first + 2 * p));
-            const double high =
-                2.0 * std::sin(m_half_step * static_cast<double>(first + 2 * p + 1));
-            chord[p] = Pair{low * low, high * high};
-            factor[p] = 2.0 - chord[p];
-            last[p] = Pair{0.0, 0.0};
-            before[p] = Pair{0.0, 0.0};
-        }
-        for (const double sample : m_signal) {
-            const Pair both{sample, sample};
-            for (std::size_t p = 0; p < pairs; ++p) {
-                const Pair now = factor[p] * last[p] + (both - before[p]);
-                before[p] = last[p];
-                last[p] = now;
-            }
-        }
-        Block result;
-        for (std::size_t p = 0; p < pairs; ++p) {
-            const Pair step = last[p] - before[p];
-            const Pair power = step * step + chord[p] * last[p] * before[p];
-            result[2 * p] = std::sqrt(std::max(power[0], 0.0));
-            result[2 * p + 1] = std::sqrt(std::max(power[1], 0.0));
-        }
-        return result;
+        return magnitudes(first, std::make_index_sequence<k_block / 2>{});
     }
 
 private:
+    using Pair = double __attribute__((vector_size(16))); // two neighbouring bins
+
+    template <std::size_t... Pairs>
+    [[nodiscard]] Block magnitudes(std::size_t first, std::index_sequence<Pairs...>) const {
+        // 2 cos(theta) = 2 - 4 sin^2(theta / 2) keeps its digits at small angles, and so does the
+        // formula that closes the recurrence.
+        const Pair chord[] = {squared_chords(first + 2 * Pairs)...};
+        const Pair factor[] = {2.0 - chord[Pairs]...};
+        Pair last[sizeof...(Pairs)] = {};
+        Pair before[sizeof...(Pairs)] = {};
+        for (const double sample : m_signal) {
+            const Pair both{sample, sample};
+            (advance(last[Pairs], before[Pairs], factor[Pairs], both), ...);
+        }
+        Block result;
+        (store(result, 2 * Pairs, power(last[Pairs], before[Pairs], chord[Pairs])), ...);
+        return result;
+    }
+
+    [[nodiscard]] Pair squared_chords(std::size_t bin) const {
+        const double low = 2.0 * std::sin(m_half_step * static_cast<double>(bin));
+        const double high = 2.0 * std::sin(m_half_step * static_cast<double>(bin + 1));
+        return Pair{low * low, high * high};
+    }
+    static void advance(Pair& last, Pair& before, const Pair& factor, const Pair& sample) {
+        const Pair now = factor * last + (sample - before);
+        before = last;
+        last = now;
+    }
+    [[nodiscard]] static Pair power(const Pair& last, const Pair& before, const Pair& chord) {
+        return (last - before) * (last - before) + chord * last * before;
+    }
+    static void store(Block& block, std::size_t at, const Pair& power) {
+        block[at] = std::sqrt(std::max(power[0], 0.0));
+        block[at + 1] = std::sqrt(std::max(power[1], 0.0));
+    }
+
     std::span<const double> m_signal;
     double m_half_step;
 };
