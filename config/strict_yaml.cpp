@@ -19,9 +19,11 @@ using estimator::Result;
 
 constexpr std::size_t k_longest_quote = 40; // bytes of the file that a message repeats
 
+/// For the ends of ranges, which are short numbers.
 std::string shortest(double number) {
     std::array<char, 32> text{};
-    const auto written = std::to_chars(text.data(), text.data() + text.size(), number);
+    const auto written =
+        std::to_chars(text.data(), text.data() + text.size(), number, std::chars_format::fixed);
     return {text.data(), written.ptr};
 }
 

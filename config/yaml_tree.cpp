@@ -103,7 +103,10 @@ private:
 
     YamlNode make(const YAML::Mark& mark, YamlNode::Kind kind) {
         if (wants_key()) {
-            throw Refusal{mark, "a key must be plain text"};
+            // At the end of the file the parser takes an open bracket for a key.
+            throw Refusal{mark, kind == YamlNode::Kind::empty
+                                    ? "a key must be plain text"
+                                    : "a key must be plain text, or this bracket is never closed"};
         }
         if (++m_nodes > k_max_yaml_nodes) {
             throw Refusal{mark, "more than " + std::to_string(k_max_yaml_nodes) +
