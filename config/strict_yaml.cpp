@@ -27,28 +27,45 @@ std::string shortest(double number) {
     return {text.data(), written.ptr};
 }
 
+/// Length of the control character at `i` (C0, DEL, or C1 in UTF-8), 0 when there is none.
+std::size_t control_length(std::string_view text, std::size_t i) {
+    const auto byte = [&](std::size_t at) {
+        return at < text.size() ? static_cast<unsigned char>(text[at]) : 0xFFU;
+    };
+    if (byte(i) < 0x20 || byte(i) == 0x7F) {
+        return 1;
+    }
+    return byte(i) == 0xC2 && byte(i + 1) < 0xA0 ? 2 : 0;
+}
+
+bool has_control(std::string_view text) {
+    for (std::size_t i = 0; i < text.size(); ++i) {
+        if (control_length(text, i) > 0) {
+            return true;
+        }
+    }
+    return false;
+}
+
 /// Text from a file for a message: in quotes, cut when long, controls shown as \xNN, so that it
 /// can neither break the line nor drive a terminal.
 std::string in_quotes(std::string_view text) {
     std::string shown = "'";
-    for (std::size_t i = 0; i < text.size(); ++i) {
-        const auto byte = static_cast<unsigned char>(text[i]);
-        const bool starts_character = (byte & 0xC0) != 0x80;
+    for (std::size_t i = 0; i < text.size();) {
+        const bool starts_character = (static_cast<unsigned char>(text[i]) & 0xC0) != 0x80;
         if (i >= k_longest_quote && starts_character) {
             shown += "...";
             break;
         }
-        const bool c1_control =
-            byte == 0xC2 && i + 1 < text.size() && static_cast<unsigned char>(text[i + 1]) < 0xA0;
-        if (byte < 0x20 || byte == 0x7F) {
-            std::array<char, 8> code{};
-            std::snprintf(code.data(), code.size(), "\\x%02X", static_cast<unsigned>(byte));
-            shown += code.data();
-        } else if (c1_control) {
-            shown += '?';
-            ++i;
+        const std::size_t length = control_length(text, i);
+        if (length > 0) {
+            const auto code = static_cast<unsigned char>(text[i + length - 1]);
+            std::array<char, 8> escape{};
+            std::snprintf(escape.data(), escape.size(), "\\x%02X", static_cast<unsigned>(code));
+            shown += escape.data();
+            i += length;
         } else {
-            shown += text[i];
+            shown += text[i++];
         }
     }
     return shown + "'";
@@ -165,10 +182,13 @@ Result<bool> YamlValue::truth() const {
 }
 
 Result<std::string> YamlValue::text() const {
-    if (m_node->kind == YamlNode::Kind::scalar || is_empty()) {
-        return m_node->text;
+    if (m_node->kind != YamlNode::Kind::scalar && !is_empty()) {
+        return must_be("a text");
     }
-    return must_be("a text");
+    if (has_control(m_node->text)) {
+        return must_be("a text of one line without control characters");
+    }
+    return m_node->text;
 }
 
 Result<std::size_t> YamlValue::choice(std::span<const std::string> words) const {

@@ -41,7 +41,7 @@ public:
     [[nodiscard]] estimator::Result<double> number(const Range& range) const;
     [[nodiscard]] estimator::Result<std::int64_t> whole_number(const Range& range) const;
     [[nodiscard]] estimator::Result<bool> truth() const;
-    /// A scalar as written; an empty value is an empty text.
+    /// A scalar of one line without control characters; an empty value is an empty text.
     [[nodiscard]] estimator::Result<std::string> text() const;
     /// The place in `words` of the word that stands here.
     [[nodiscard]] estimator::Result<std::size_t> choice(std::span<const std::string> words) const;

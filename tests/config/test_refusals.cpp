@@ -90,13 +90,27 @@ TEST_CASE("columns count characters, not bytes") {
 }
 
 TEST_CASE("a message shows control characters as codes and cuts long text") {
-    CHECK(message_of("log: {level: \"\\e[31m\\n\\x85\"}") ==
-          "sagitta.yaml:1:14: log.level is the text '\\x1B[31m\\x0A?', but must be debug, info, "
-          "warning or error");
+    CHECK(
+        message_of("log: {level: \"\\e[31m\\n\\x85\"}") ==
+        "sagitta.yaml:1:14: log.level is the text '\\x1B[31m\\x0A\\x85', but must be debug, info, "
+        "warning or error");
     const std::string letters(100, 'a');
     CHECK(message_of("log: {level: " + letters + "}") ==
           "sagitta.yaml:1:14: log.level is '" + letters.substr(0, 40) +
               "...', but must be debug, info, warning or error");
+}
+
+TEST_CASE("a name or path with control characters is refused") {
+    CHECK(
+        message_of("store: {file: \"/srv/a\\0b\"}") ==
+        "sagitta.yaml:1:15: store.file is the text '/srv/a\\x00b', but must be a text of one line "
+        "without control characters");
+    CHECK_FALSE(parse_settings("pointers: [{name: \"a\\nb\"}]", "f").has_value());
+    CHECK_FALSE(parse_settings("pointers: [{name: \"a\\x9Bb\"}]", "f").has_value());
+    CHECK_FALSE(
+        parse_settings("pointers: [{name: a, gain: {model: table, file: \"g\\e.yaml\"}}]", "f")
+            .has_value());
+    CHECK(settings_in("pointers: [{name: \"Büro \\xB5\"}]").pointers[0].name == "Büro µ");
 }
 
 TEST_CASE("a store file that depends on the folder one stands in is refused") {
