@@ -83,7 +83,7 @@ private:
         }
         return area;
     }
-    [[nodiscard]] Inflections split(std::size_t begin, std::size_t end) const;
+    [[nodiscard]] Inflections split(std::size_t begin, std::size_t end, double floor) const;
 
     std::span<const double> m_velocity;
     double m_prominence = 0.0;
@@ -91,7 +91,8 @@ private:
 
 /// Inflections among the intervals [begin, end), which together stand out: two parts count apart
 /// when each stands out above the interval between them.
-Inflections Profile::split(std::size_t begin, std::size_t end) const {
+/// @param floor  speed that must be reached at or after an inflection
+Inflections Profile::split(std::size_t begin, std::size_t end, double floor) const {
     for (;;) {
         std::size_t lowest = begin;
         std::size_t greatest = begin;
@@ -103,11 +104,15 @@ Inflections Profile::split(std::size_t begin, std::size_t end) const {
         const bool left = area_above(base, begin, lowest) >= m_prominence;
         const bool right = area_above(base, lowest + 1, end) >= m_prominence;
         if (left && right) {
-            const Inflections earlier = split(begin, lowest);
-            return {earlier.count + split(lowest + 1, end).count, earlier.first};
+            const Inflections earlier = split(begin, lowest, floor);
+            return {earlier.count + split(lowest + 1, end, floor).count, earlier.first};
         }
         if (!left && !right) {
-            return {1, greatest};
+            double top = speed(greatest);
+            for (std::size_t i = greatest + 1; i <= end; ++i) {
+                top = std::max(top, speed(i));
+            }
+            return {top >= floor ? 1U : 0U, greatest};
         }
         begin = left ? begin : lowest + 1;
         end = left ? lowest : end;
@@ -116,45 +121,46 @@ Inflections Profile::split(std::size_t begin, std::size_t end) const {
 
 Inflections Profile::inflections(std::size_t peak, std::size_t end) const {
     // The steepest interval parts the fall. On either side, going towards it, each interval that is
-    // steeper than all before closes a bump of gentler ones whose shallower flank is the last
-    // record.
+    // steeper than all before closes a bump of gentler ones, whose shallower flank is the steepest
+    // so far.
+    const double floor = speed(end) + m_prominence;
     std::size_t steepest = peak;
     for (std::size_t k = peak + 1; k < end; ++k) {
         steepest = change(k) < change(steepest) ? k : steepest;
     }
-    Inflections found;
+    Inflections before;
     std::size_t record = peak;
     double area = 0.0;
-    for (std::size_t k = peak + 1; k <= steepest && k < end; ++k) {
-        if (change(k) <= change(record)) {
-            if (area >= m_prominence) {
-                const Inflections bump = split(record + 1, k);
-                found.first = found.count == 0 ? bump.first : found.first;
-                found.count += bump.count;
-            }
-            record = k;
-            area = 0.0;
-        } else {
+    for (std::size_t k = peak + 1; k <= steepest; ++k) {
+        if (change(k) > change(record)) {
             area += change(k) - change(record);
+            continue;
         }
+        if (area >= m_prominence) {
+            const Inflections bump = split(record + 1, k, floor);
+            before.first = before.count == 0 ? bump.first : before.first;
+            before.count += bump.count;
+        }
+        record = k;
+        area = 0.0;
     }
-    const bool any_before = found.count > 0;
+    Inflections after;
     record = end - 1;
     area = 0.0;
     for (std::size_t k = end - 1; k-- > steepest;) {
-        if (change(k) <= change(record)) {
-            if (area >= m_prominence) {
-                const Inflections bump = split(k + 1, record);
-                found.first = any_before ? found.first : bump.first;
-                found.count += bump.count;
-            }
-            record = k;
-            area = 0.0;
-        } else {
+        if (change(k) > change(record)) {
             area += change(k) - change(record);
+            continue;
         }
+        if (area >= m_prominence) {
+            const Inflections bump = split(k + 1, record, floor);
+            after.first = bump.count > 0 ? bump.first : after.first;
+            after.count += bump.count;
+        }
+        record = k;
+        area = 0.0;
     }
-    return found;
+    return {before.count + after.count, before.count > 0 ? before.first : after.first};
 }
 
 /// Adds the pieces of one rise and fall of the speed, as they come in time.
@@ -194,6 +200,9 @@ private:
 
 Submovements find_submovements(std::span<const double> along_velocity) noexcept {
     const Profile profile{along_velocity};
+    if (!(profile.prominence() > 0.0)) {
+        return {1, static_cast<double>(profile.size() - 1)};
+    }
     Counter counter{profile};
     bool is_rising = true;
     std::size_t peak = 0;

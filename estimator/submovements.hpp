@@ -24,11 +24,11 @@ struct Submovements {
 /// 50 ms. So a turn counts only when what follows stands out by 5 % of the peak of |velocity|:
 /// (1), (2)  |velocity| falls by that much from a peak and rises by that much from the lowest point
 ///           after it;
-/// (3)       while |velocity| falls, the deceleration eases and grows again, and with the steady
+/// (3)       while |velocity| falls, the deceleration eases and grows again; with the steady
 ///           deceleration of the shallower of the two flanks taken out, |velocity| rises by that
-///           much. As the shallower flank tends to 0 this becomes (2), so there is no step between
-///           a shoulder and a second peak. Two inflections count as two when each stands out so
-///           above what parts them.
+///           much, and from there it still falls by that much. As the shallower flank tends to 0
+///           this becomes (2), so there is no step between a shoulder and a second peak. Two
+///           inflections count as two when each stands out so above what parts them.
 /// Each such turn, before or after the primary submovement's end, starts a piece; `count` is the
 /// number of pieces. Smaller turns, and inflections while speeding up, are not counted.
 /// Allocates nothing.
