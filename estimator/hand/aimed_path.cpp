@@ -49,12 +49,16 @@ Tremor draw_tremor(const Person& person, Random& random) {
     return tremor;
 }
 
+/// How wild this movement is across its axis, in multiples of the person's figures: one movement
+/// is made with more care than the next, throughout, and long ones bow less for their length.
+double draw_wildness(const Person& person, const Form& form, double distance_mm, Random& random) {
+    return form.lateral * random.log_normal(1.0, person.lateral_spread) *
+           std::pow(distance_mm / k_noise_distance.value(), person.lateral_growth - 1.0);
+}
+
 /// Height of a random arc over a stroke of this length.
-double draw_bow(const Person& person, const Form& form, double length_mm, Random& random) {
-    const double reach = length_mm / k_noise_distance.value();
-    const double sd = person.lateral_noise * form.lateral * k_noise_distance.value() *
-                      std::pow(reach, person.lateral_growth);
-    return sd * random.normal();
+double draw_bow(const Person& person, double wildness, double length_mm, Random& random) {
+    return person.lateral_noise * wildness * length_mm * random.normal();
 }
 
 double draw_movement_time(const Person& person, const Form& form, const AimTask& task,
@@ -73,26 +77,26 @@ struct Aims {
     void add(Point end) { ends[count++] = end; }
 };
 
-Aims draw_aims(const Person& person, double distance, double width, Random& random) {
+Aims draw_aims(const Person& person, double wildness, double distance, double width,
+               Random& random) {
     Aims aims;
     Point at;
     if (random.chance(person.detour_share)) {
-        const double spread = person.detour_spread * distance;
+        const double spread = person.detour_spread * wildness * distance;
         at = {distance * random.uniform(0.15, 0.7) + spread * random.normal(),
               spread * random.normal()};
         aims.add(at);
     }
     const double sd = person.endpoint_spread * width / k_effective_width;
     const Point press{distance + sd * random.normal(), sd * random.normal()};
-    const Point centre{distance, 0.0};
     double spread = person.primary_spread;
     double bias = -person.primary_undershoot;
     for (int stroke = 0; stroke <= k_max_corrections; ++stroke) {
         const Point rest = press - at;
         const double reach = 1.0 + bias + spread * random.normal();
-        const double aside = 0.35 * spread * random.normal();
+        const double aside = 0.35 * wildness * spread * random.normal();
         const Point end = at + rest * reach + turned(rest, std::numbers::pi / 2.0) * aside;
-        if (stroke == k_max_corrections || length(end - centre) <= 0.5 * width) {
+        if (stroke == k_max_corrections || length(press - end) <= 0.5 * width) {
             break;
         }
         aims.add(end);
@@ -135,7 +139,8 @@ double lawful_time_s(const Person& person, const Form& form, const AimTask& task
 
 AimedPath aim(const Person& person, const Form& form, const AimTask& task, Random& random) {
     const double distance = task.distance.value();
-    const Aims aims = draw_aims(person, distance, task.width.value(), random);
+    const double wildness = draw_wildness(person, form, distance, random);
+    const Aims aims = draw_aims(person, wildness, distance, task.width.value(), random);
 
     const double time = draw_movement_time(person, form, task, random);
     const double dwell =
@@ -159,8 +164,8 @@ AimedPath aim(const Person& person, const Form& form, const AimTask& task, Rando
     for (std::size_t i = 0; i < aims.count; ++i) {
         const Point by = aims.ends[i] - at;
         const double reach = length(by);
-        const double bow = draw_bow(person, form, reach, random) + person.bow * reach;
-        const double bend = 0.4 * draw_bow(person, form, reach, random);
+        const double bow = draw_bow(person, wildness, reach, random) + person.bow * reach;
+        const double bend = 0.4 * draw_bow(person, wildness, reach, random);
         path.add({begins[i] * stretch, lasts[i] * stretch, turned(by, direction), bow, bend});
         at = aims.ends[i];
     }
@@ -171,6 +176,7 @@ AimedPath aim(const Person& person, const Form& form, const AimTask& task, Rando
 
 AimedPath wander(const Person& person, const Form& form, std::size_t legs, Millimetres leg_distance,
                  Random& random) {
+    const double wildness = draw_wildness(person, form, leg_distance.value(), random);
     AimedPath path;
     double begin = 0.0;
     for (std::size_t i = 0; i < legs; ++i) {
@@ -178,7 +184,7 @@ AimedPath wander(const Person& person, const Form& form, std::size_t legs, Milli
         const double lasts = random.log_normal(0.55, 0.35) * form.time;
         const double direction = random.uniform(0.0, 2.0 * std::numbers::pi);
         path.add({begin, lasts, turned({reach, 0.0}, direction),
-                  draw_bow(person, form, reach, random), 0.0});
+                  draw_bow(person, wildness, reach, random), 0.0});
         begin += lasts * (1.0 - k_overlap);
     }
     path.set_tremor(draw_tremor(person, random));

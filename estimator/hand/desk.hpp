@@ -24,7 +24,7 @@ struct DeskPointer {
 
 /// Targets of everyday work: distances and widths are log-normal, independent of each other.
 struct TargetMix {
-    Pixels distance = Pixels::of(205.0); ///< median
+    Pixels distance = Pixels::of(190.0); ///< median
     double distance_spread = 1.0;        ///< SD of the log
     Pixels width = Pixels::of(34.0);     ///< median
     double width_spread = 0.55;          ///< SD of the log
@@ -37,10 +37,10 @@ struct ActivityMix {
     double wheel = 0.10;
     double drag = 0.035;
     double double_click = 0.07;
-    double short_move = 0.10;  ///< a press within a few px of the last one
-    double still_press = 0.05; ///< a press without motion
-    double slow_press = 0.02;  ///< takes over four seconds to arrive
-    double long_dwell = 0.05;  ///< arrives, reads on, then presses
+    double short_move = 0.13;  ///< a press within a few px of the last one
+    double still_press = 0.06; ///< a press without motion
+    double slow_press = 0.03;  ///< takes over four seconds to arrive
+    double long_dwell = 0.06;  ///< arrives, reads on, then presses
     double clutch = 0.03;      ///< a long aimed movement with the device lifted half-way
 };
 
