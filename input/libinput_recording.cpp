@@ -30,6 +30,18 @@ std::size_t indent_of(std::string_view line) {
     return std::min(line.find_first_not_of(' '), line.size());
 }
 
+/// What follows the dash of a list's item; nothing for a line that is no item.
+std::optional<std::string_view> item_of(std::string_view text) {
+    if (!text.starts_with("- "))
+        return std::nullopt;
+    return trimmed(text.substr(1));
+}
+
+bool is_device(std::string_view text) {
+    const auto item = item_of(text);
+    return item && item->starts_with("node:");
+}
+
 /// "- [sec, usec, type, code, value]", a comment after it ignored.
 std::optional<input_event> parse_event(std::string_view text) {
     const std::size_t open = text.find('[');
@@ -88,7 +100,7 @@ public:
         if (m_where == Where::before_devices) {
             if (indent == 0 && text.starts_with("devices:"))
                 m_where = Where::between_devices;
-        } else if (text.starts_with("- node:")) {
+        } else if (is_device(text)) {
             m_header.assign(line.text);
             m_header_line = line.number;
             m_where = Where::header;
@@ -154,12 +166,12 @@ private:
     }
 
     void take_event(const Line& line, std::string_view text, std::size_t indent) {
-        const bool is_item = text.front() == '-';
-        if (indent < m_events_indent || (indent == m_events_indent && !is_item)) {
+        const auto item = item_of(text);
+        if (indent < m_events_indent || (indent == m_events_indent && !item)) {
             m_where = Where::between_devices;
-        } else if (text.starts_with("- evdev:")) {
+        } else if (item && item->starts_with("evdev:")) {
             m_in_evdev = true;
-        } else if (is_item && !text.starts_with("- [")) {
+        } else if (item && !item->starts_with("[")) {
             m_in_evdev = false; // what libinput or the HID layer made of it
             if (line.is_cut)
                 cut(line);
