@@ -1,0 +1,254 @@
+// The test on a real kernel: sagittad records a USB mouse that is moved from the machine's monitor
+// and a 1000 Hz virtual pointer, and what it stored is laid beside what was sent. See
+// scripts/guest-test, which prepares the machine.
+//   guest_test KERNEL INITRAMFS SAGITTA FOLDER
+#include "tests/guest/guest.hpp"
+#include "tests/guest/rows.hpp"
+
+#include <cstdio>
+#include <cstdlib>
+#include <exception>
+#include <stdexcept>
+
+namespace {
+
+using namespace sagitta::guest;
+
+// A Wednesday of ISO week 10.
+const std::string k_guest_clock = "2026-03-04T09:00:00";
+const std::string k_store = "/data/day.db";
+const std::string k_log = "/tmp/sagittad.log";
+
+struct Paths {
+    MachineFiles machine;
+    std::string sagitta; ///< the command, here
+    std::string recordings;
+};
+
+/// Runs the command here and returns its file of output.
+std::string run_here(const std::string& command, const std::string& output) {
+    const std::string line = command + " >" + output + " 2>" + output + ".err </dev/null";
+    if (std::system(line.c_str()) != 0) {
+        throw std::runtime_error{line + " failed: " + read_file(output + ".err")};
+    }
+    return read_file(output);
+}
+
+class Test {
+public:
+    explicit Test(const Paths& paths)
+        : m_paths{paths}, m_guest{paths.machine, k_guest_clock}, m_machine{m_guest.machine()} {}
+
+    int run();
+
+private:
+    void prepare();
+    void simulated_pointer();
+    void usb_mouse();
+    void unplug_and_replug();
+    void stop_and_compare();
+    void compare(const std::string& pointer, const std::string& recording,
+                 const std::string& kernel_log, const std::vector<Row>& found);
+    void week();
+    void kill();
+    void keyboards();
+    void expect_keyboards_closed(const std::string& when);
+
+    std::vector<Packet> planned(const std::string& recording) const {
+        return packets_of(read_file(m_paths.recordings + "/" + recording));
+    }
+    /// What a replay of a recording finds, here.
+    std::vector<Row> replayed(const std::string& recording);
+
+    Paths m_paths;
+    Checks m_checks;
+    Guest m_guest;
+    Machine& m_machine;
+    std::string m_daemon;
+    std::string m_simulated, m_mouse;     ///< nodes
+    std::vector<std::string> m_keyboards; ///< nodes
+    std::size_t m_unplugged_from = 0;
+};
+
+int Test::run() {
+    prepare();
+    simulated_pointer();
+    usb_mouse();
+    unplug_and_replug();
+    stop_and_compare();
+    week();
+    kill();
+    keyboards();
+    m_machine.power_off();
+    return m_checks.close();
+}
+
+void Test::prepare() {
+    m_guest.make_simulated_pointer();
+    m_simulated = m_guest.node_of(k_simulated_pointer);
+    m_mouse = m_guest.node_of(k_usb_mouse);
+    m_keyboards = {m_guest.node_of(k_ps2_keyboard), m_guest.node_of(k_usb_keyboard)};
+    for (std::size_t i = 0; i < m_keyboards.size(); ++i) {
+        m_guest.start_witness("events " + m_keyboards[i] + " /tmp/keys" + std::to_string(i),
+                              "/tmp/keys.out" + std::to_string(i));
+    }
+    m_guest.start_witness("events " + m_simulated + " /tmp/simulated.raw", "/tmp/simulated.out");
+    m_guest.start_witness("events " + m_mouse + " /tmp/usb.raw", "/tmp/usb.out");
+    // From here on every opening of these nodes is seen.
+    m_guest.start_witness("opens /tmp/opens " + m_keyboards[0] + " " + m_keyboards[1] + " " +
+                              m_mouse,
+                          "/tmp/opens.out");
+    m_daemon = m_guest.start_daemon("--store " + k_store, k_log, m_mouse);
+    m_checks.expect(m_guest.holds_open(m_daemon, m_simulated),
+                    "sagittad finds the pointers where no udev runs");
+    expect_keyboards_closed("after its start");
+}
+
+void Test::expect_keyboards_closed(const std::string& when) {
+    bool closed = true;
+    for (const std::string& keyboard : m_keyboards) {
+        closed = closed && !m_guest.holds_open(m_daemon, keyboard);
+    }
+    m_checks.expect(closed, "sagittad holds no keyboard open " + when);
+}
+
+void Test::simulated_pointer() {
+    m_guest.begin_simulated("simulated.raw");
+    m_guest.type("s");
+    m_guest.type("ret");
+    expect_keyboards_closed("while keys are typed and a pointer moves");
+    std::printf("the simulated pointer: %s\n", m_guest.end_simulated().c_str());
+}
+
+void Test::usb_mouse() {
+    m_guest.move_usb_mouse(planned("usb.raw"));
+    expect_keyboards_closed("after the USB mouse has moved");
+}
+
+void Test::unplug_and_replug() {
+    std::vector<Packet> half = planned("unplugged.raw");
+    half.resize(half.size() / 2);
+    m_guest.move_usb_mouse(half);
+    m_machine.qmp("device_del", R"({"id":"mouse"})");
+    m_guest.wait_until_gone(k_usb_mouse);
+    m_machine.qmp("device_add", R"({"driver":"usb-mouse","id":"mouse2","bus":"usb.0"})");
+    m_mouse = m_guest.node_of(k_usb_mouse);
+    m_machine.wait_for("ls -l /proc/" + m_daemon + "/fd | grep -q '" + m_mouse + "$'");
+    m_guest.start_witness("events " + m_mouse + " /tmp/replugged.raw", "/tmp/replugged.out");
+    m_guest.move_usb_mouse(planned("replugged.raw"));
+    expect_keyboards_closed("after a mouse was unplugged and another plugged in");
+    // The other keyboard's turn: without the USB keyboard, keys go to the PS/2 one.
+    m_machine.qmp("device_del", R"({"id":"keyboard"})");
+    m_guest.wait_until_gone(k_usb_keyboard);
+    m_guest.type("a");
+}
+
+std::vector<Row> Test::replayed(const std::string& recording) {
+    const std::string base = (m_paths.machine.folder / "replayed").string();
+    std::filesystem::remove(base + ".db");
+    run_here(m_paths.sagitta + " replay --store " + base + ".db --start 2026-03-04T09:00:00Z " +
+                 recording,
+             base + ".txt");
+    return rows_of(
+        run_here(m_paths.sagitta + " export --store " + base + ".db --format csv", base + ".csv"));
+}
+
+void Test::compare(const std::string& pointer, const std::string& recording,
+                   const std::string& kernel_log, const std::vector<Row>& found) {
+    const std::string log = m_machine.fetch("/tmp/" + kernel_log);
+    const std::string copy = (m_paths.machine.folder / ("kernel-" + kernel_log)).string();
+    if (std::FILE* file = std::fopen(copy.c_str(), "wb")) {
+        std::fwrite(log.data(), 1, log.size(), file);
+        std::fclose(file);
+    }
+    const std::string sent = m_paths.recordings + "/" + recording;
+    compare_with_sent(m_checks, {pointer, packets_of(read_file(sent)), replayed(sent)},
+                      packets_of(log), found);
+    compare_with_replay(m_checks, pointer, replayed(copy), found);
+}
+
+void Test::stop_and_compare() {
+    m_checks.expect(m_guest.stop(m_daemon) == 0, "SIGTERM stops sagittad cleanly");
+    compare(k_simulated_pointer, "simulated.raw", "simulated.raw",
+            rows_of(m_guest.exported(k_store, "--pointer '" + k_simulated_pointer + "'")));
+
+    const auto mouse = rows_of(m_guest.exported(k_store, "--pointer '" + k_usb_mouse + "'"));
+    const std::size_t before =
+        std::min(mouse.size(), replayed(m_paths.recordings + "/usb.raw").size());
+    const auto replugged = mouse.begin() + static_cast<std::ptrdiff_t>(before);
+    compare(k_usb_mouse, "usb.raw", "usb.raw", {mouse.begin(), replugged});
+    const std::string hours =
+        m_guest.exported(k_store, "--table hours --pointer '" + k_usb_mouse + "'");
+    m_checks.expect(sum_of_column(hours, "interrupted") == 1.0,
+                    "a movement cut off by unplugging counts as interrupted, once");
+    compare("mouse plugged in again", "replugged.raw", "replugged.raw", {replugged, mouse.end()});
+}
+
+void Test::week() {
+    const std::string week = m_machine.must_run("sagitta week --store " + k_store);
+    std::printf("%s\n", week.c_str());
+    m_checks.expect(week.find(k_simulated_pointer) != std::string::npos &&
+                        week.find(k_usb_mouse) != std::string::npos,
+                    "sagitta week inside the guest prints that day and both pointers");
+}
+
+void Test::kill() {
+    m_machine.must_run("printf 'store:\\n  batch_movements: 4\\n' >/tmp/small.yaml");
+    const std::string store = "/data/killed.db";
+    const std::string arguments = "--store " + store + " --config /tmp/small.yaml";
+    m_daemon = m_guest.start_daemon(arguments, k_log, m_simulated);
+    m_guest.begin_simulated("killed.raw");
+    m_guest.end_simulated();
+    m_machine.run("kill -KILL " + m_daemon + "; wait " + m_daemon);
+
+    const auto expected = replayed(m_paths.recordings + "/killed.raw");
+    const auto kept = rows_of(m_guest.exported(store, ""));
+    m_checks.expect(kept.size() + 4 >= expected.size() && kept.size() <= expected.size(),
+                    "after SIGKILL the store opens and at most one batch of 4 is lost",
+                    std::to_string(expected.size()) + " sent, " + std::to_string(kept.size()) +
+                        " kept");
+    m_daemon = m_guest.start_daemon(arguments, k_log, m_simulated);
+    m_checks.expect(m_guest.stop(m_daemon) == 0 &&
+                        m_machine.fetch(k_log).find("set aside") == std::string::npos,
+                    "sagittad goes on with the file that it was killed over");
+}
+
+void Test::keyboards() {
+    bool typed = true;
+    for (std::size_t i = 0; i < m_keyboards.size(); ++i) {
+        const std::string keys = m_machine.fetch("/tmp/keys" + std::to_string(i));
+        typed = typed && !packets_of(keys).empty();
+    }
+    m_checks.expect(typed, "keys arrived at both keyboards while sagittad ran");
+
+    m_machine.must_run(": </dev/input/" + m_keyboards[0].substr(11));
+    m_machine.wait_for("grep -q " + m_keyboards[0] + " /tmp/opens");
+    const std::string opens = m_machine.fetch("/tmp/opens");
+    std::size_t keyboards_opened = 0;
+    for (const std::string& keyboard : m_keyboards) {
+        for (std::size_t at = opens.find(keyboard); at != std::string::npos;
+             at = opens.find(keyboard, at + 1)) {
+            ++keyboards_opened;
+        }
+    }
+    m_checks.expect(keyboards_opened == 1 && opens.find("/dev/input/event") != std::string::npos,
+                    "sagittad never opened a keyboard",
+                    "every opening was watched; the one seen is this test's own, at the end");
+}
+
+} // namespace
+
+int main(int argc, char** argv) {
+    if (argc != 5) {
+        std::fputs("usage: guest_test KERNEL INITRAMFS SAGITTA FOLDER\n", stderr);
+        return 2;
+    }
+    const std::filesystem::path folder = argv[4];
+    try {
+        Test test{{{argv[1], argv[2], folder}, argv[3], (folder / "recordings").string()}};
+        return test.run();
+    } catch (const std::exception& error) {
+        std::printf("FAILED: the test broke off: %s\n0 passed, 1 failed\n", error.what());
+        return 1;
+    }
+}
