@@ -20,7 +20,8 @@ struct SectorSummary {
 };
 
 /// Mergeable summary of any set of outcomes; the store keeps one per hour, pointer and condition.
-/// The statistics cover scored clicks; drags are only counted.
+/// The statistics cover scored clicks; drags are only counted, by the outcome of their exposure.
+/// In logarithms lengths below 0.1 px count as 0.1 px, and times below 1 us as 1 us.
 struct HourSummary {
     OutcomeCounts outcomes{};
     std::uint64_t presses = 0;
@@ -37,7 +38,7 @@ struct HourSummary {
     std::array<double, 3> difficulty_bits{};
 
     PairMoments log_distance_time;  ///< ln px, ln s
-    PairMoments log_distance_error; ///< ln px, ln px; ME below 0.1 px counts as 0.1 px
+    PairMoments log_distance_error; ///< ln px, ln px of ME
     Moments log_path_ratio;
     Moments direction_changes;
     Moments submovements;

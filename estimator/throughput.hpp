@@ -42,7 +42,8 @@ struct EffectiveThroughput {
 /// Effective throughput of one sequence of trials with known targets.
 /// Source: ISO 9241-411:2012; Soukoreff & MacKenzie (2004).
 /// @param trials  >= 2, with from != to
-/// @return ErrorCode::too_few below 2 trials; ErrorCode::bad_value when the endpoints do not vary
+/// @return ErrorCode::too_few below 2 trials; ErrorCode::bad_value when a trial has no task
+///         axis, the endpoints do not vary, or the mean distance or time is not positive
 [[nodiscard]] Result<EffectiveThroughput> effective_throughput(std::span<const TargetTrial> trials);
 
 } // namespace sagitta::estimator
