@@ -1,5 +1,6 @@
 #include "estimator/calibration.hpp"
 
+#include <algorithm>
 #include <utility>
 
 namespace sagitta::estimator {
@@ -23,22 +24,8 @@ Calibration absolute(AxisResolution resolution, CpiSource source, Gain gain) {
             source};
 }
 
-} // namespace
-
-Calibration calibrate(const PointerDescription& pointer, std::optional<Cpi> override_cpi,
-                      CpiSource override_source, Gain gain) {
-    const bool is_absolute =
-        pointer.kind == PointerKind::touchpad || pointer.kind == PointerKind::absolute;
-    if (is_absolute) {
-        if (override_cpi) {
-            const double per_mm = override_cpi->value() / k_mm_per_inch;
-            return absolute({per_mm, per_mm}, override_source, std::move(gain));
-        }
-        if (pointer.resolution) {
-            return absolute(*pointer.resolution, CpiSource::axis_resolution, std::move(gain));
-        }
-        return relative(k_assumed_cpi, CpiSource::assumed, std::move(gain));
-    }
+Calibration calibrate_relative(const PointerDescription& pointer, std::optional<Cpi> override_cpi,
+                               CpiSource override_source, Gain gain) {
     if (override_cpi) {
         return relative(*override_cpi, override_source, std::move(gain));
     }
@@ -46,6 +33,43 @@ Calibration calibrate(const PointerDescription& pointer, std::optional<Cpi> over
         return relative(*pointer.udev_cpi, CpiSource::udev, std::move(gain));
     }
     return relative(k_assumed_cpi, CpiSource::assumed, std::move(gain));
+}
+
+Calibration calibrate_absolute(const PointerDescription& pointer, std::optional<Cpi> override_cpi,
+                               CpiSource override_source, Gain gain) {
+    if (override_cpi) {
+        const double per_mm = override_cpi->value() / k_mm_per_inch;
+        return absolute({per_mm, per_mm}, override_source, std::move(gain));
+    }
+    if (pointer.resolution) {
+        return absolute(*pointer.resolution, CpiSource::axis_resolution, std::move(gain));
+    }
+    return relative(k_assumed_cpi, CpiSource::assumed, std::move(gain));
+}
+
+/// Brings a relative pointer to the resolution that its desktop's gain table is made for.
+void normalise(Calibration& calibration, const PointerDescription& pointer, Cpi table_cpi) {
+    const Cpi known = pointer.udev_cpi.value_or(k_assumed_cpi);
+    const double share = std::min(1.0, table_cpi / known);
+    calibration.px_per_count_x *= share;
+    calibration.px_per_count_y *= share;
+    calibration.gain = calibration.gain.with_speeds_times(table_cpi / (calibration.cpi * share));
+}
+
+} // namespace
+
+Calibration calibrate(const PointerDescription& pointer, std::optional<Cpi> override_cpi,
+                      CpiSource override_source, Gain gain, std::optional<Cpi> gain_normalised_to) {
+    if (pointer.kind == PointerKind::touchpad || pointer.kind == PointerKind::absolute) {
+        // Its speed is in mm/s already, whatever its units.
+        return calibrate_absolute(pointer, override_cpi, override_source, std::move(gain));
+    }
+    Calibration calibration =
+        calibrate_relative(pointer, override_cpi, override_source, std::move(gain));
+    if (gain_normalised_to && !calibration.gain.is_flat()) {
+        normalise(calibration, pointer, *gain_normalised_to);
+    }
+    return calibration;
 }
 
 } // namespace sagitta::estimator

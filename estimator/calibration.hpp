@@ -24,10 +24,17 @@ struct Calibration {
 ///
 /// A relative pointer's px are counts x gain. An absolute device's units are first brought to
 /// k_assumed_cpi, so that a touchpad's fine units do not count as px.
+///
+/// Some desktops bring the counts of finer pointers down to a common resolution N before they
+/// accelerate them (`gain_normalised_to`), and know of the pointer's resolution what udev says. A
+/// table made for such a desktop gets its speeds and counts brought to N the same way. Source:
+/// published documentation of a desktop input library: devices of N or more are normalised to N,
+/// slower ones are not.
 /// @param override_cpi     > 0 when given
 /// @param override_source  CpiSource::config or CpiSource::command_line
+/// @param gain_normalised_to  N, > 0 when given; a flat gain takes no notice of it
 [[nodiscard]] Calibration calibrate(const PointerDescription& pointer,
                                     std::optional<Cpi> override_cpi, CpiSource override_source,
-                                    Gain gain);
+                                    Gain gain, std::optional<Cpi> gain_normalised_to = {});
 
 } // namespace sagitta::estimator

@@ -35,6 +35,14 @@ Gain Gain::unity() {
     return Gain{{GainPoint{MillimetresPerSecond::zero(), 1.0}}};
 }
 
+Gain Gain::with_speeds_times(double ratio) const {
+    std::vector<GainPoint> points = m_points;
+    for (GainPoint& point : points) {
+        point.speed = point.speed * ratio;
+    }
+    return Gain{std::move(points)};
+}
+
 double Gain::factor_at(MillimetresPerSecond speed) const noexcept {
     const auto above = std::upper_bound(
         m_points.begin(), m_points.end(), speed,

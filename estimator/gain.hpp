@@ -27,6 +27,8 @@ public:
     [[nodiscard]] static Gain unity();
 
     [[nodiscard]] bool is_flat() const noexcept { return m_points.size() == 1; }
+    /// The same factors at speeds `ratio` times as high. @param ratio  finite, > 0
+    [[nodiscard]] Gain with_speeds_times(double ratio) const;
     /// Linear between the table's points, constant beyond them.
     [[nodiscard]] double factor_at(MillimetresPerSecond speed) const noexcept;
 

@@ -1,12 +1,22 @@
 // The staircase of a run's counts, turned into straight ramps and sampled at equal steps while the
 // reports come in: memory is bounded by the run's length in time, whatever the report rate.
+//
+// Three things are mended on the way, since each would make a movement depend on the electronics:
+// - Stamps jitter by up to a report interval. Where reports follow each other closely, each gets
+//   the mean stamp of the reports around it. Regular stamps are their own mean, so a device that
+//   does not jitter is left as it is.
+// - A count says which step of the sensor the hand is on, not where on it. A single count is
+//   reported as the hand crosses the step's edge, half a count before its middle; at rest it is
+//   most likely in the middle. So a hand that dithers over an edge stands still on it.
+// - Before the first count and behind the last, up to half a step is covered unseen. It is given
+//   the time that the step next to it took.
 #pragma once
 
 #include "estimator/path.hpp"
 #include "estimator/units.hpp"
 
-#include <algorithm>
 #include <array>
+#include <cstddef>
 #include <cstdint>
 #include <span>
 #include <vector>
@@ -16,6 +26,9 @@ namespace sagitta::estimator {
 /// A ramp joins two changes of an axis; it is never longer than this, before that the axis stands
 /// still: a count that comes after a long pause tells nothing of when the pause ended.
 constexpr Micros k_longest_ramp{80'000};
+/// Up to seven stamps are averaged, as many as follow each other within this each: the interval of
+/// 125 reports/s, the slowest rate in wide use (common practice, no source).
+constexpr Micros k_longest_interval{8'000};
 
 class MotionGrid {
 public:
@@ -35,8 +48,8 @@ public:
     /// Time of sample 0.
     [[nodiscard]] PointerTime origin() const noexcept { return m_origin; }
 
-    /// Samples of the run so far, counts, from origin() in steps of k_sample_interval, up to the
-    /// first sample at or after last_motion(). Valid until the next add() or clear().
+    /// Samples of the run so far, counts, from origin() in steps of k_sample_interval, until the
+    /// hand has come to rest behind last_motion(). Call it once, at the run's end.
     struct Samples {
         std::span<const double> x; ///< counts, + = right
         std::span<const double> y; ///< counts, + = towards the person
@@ -44,55 +57,72 @@ public:
     [[nodiscard]] Samples samples() noexcept;
 
 private:
-    struct Axis {
-        std::vector<double> samples; ///< counts; valid below `filled`
-        std::size_t filled = 0;
-        std::int64_t counts = 0;      ///< cumulative, at the last change
-        std::int64_t last_change = 0; ///< us since the grid's origin; may lie in the run before
-        std::int64_t next_sample = 0; ///< us since the grid's origin, of sample `filled`
-
-        void begin(std::int64_t origin_moved_us) noexcept;
+    /// One axis. Times are us since the grid's origin.
+    class Axis {
+    public:
+        void reserve(std::size_t samples);
+        void begin(std::int64_t origin_moved) noexcept;
         void step(std::int64_t now, std::int32_t delta) noexcept;
-        void ramp_to(std::int64_t now, std::int64_t counts_now) noexcept;
-        void hold_to(std::size_t size) noexcept;
+        std::span<const double> finish(std::size_t size) noexcept;
+
+    private:
+        void change(std::int64_t now, std::int32_t delta) noexcept;
+        void settle(std::int64_t time) noexcept;
+        void depart(std::int64_t time) noexcept;
+        void ramp(std::int64_t from, std::int64_t to, double position) noexcept;
+        void fill(std::int64_t from, std::int64_t to, double position) noexcept;
+
+        std::vector<double> m_samples; ///< counts; valid below m_filled
+        std::size_t m_filled = 0;
+        std::int64_t m_next_sample = 0; ///< time of sample m_filled
+        std::int64_t m_counts = 0;      ///< cumulative
+        double m_position = 0.0;        ///< likeliest one at the last change
+        double m_ramped = 0.0;          ///< position at the end of the last ramp
+        std::int64_t m_last_change = 0; ///< may lie in the run before
+        std::int64_t m_step_time = 0;   ///< that the last step took
+        /// The last change ended a still stretch: its ramp waits for the next change, and may
+        /// reach this far back.
+        bool m_waits = false;
+        std::int64_t m_room = 0;
     };
 
+    struct Pending {
+        std::int64_t time;
+        std::int32_t dx;
+        std::int32_t dy;
+    };
+    static constexpr std::size_t k_window = 7;
+
     void begin(PointerTime time) noexcept;
+    void release_up_to(std::size_t end) noexcept;
+    void release(std::size_t place) noexcept;
 
     std::int64_t m_span_us;
     PointerTime m_origin{};
     PointerTime m_first{};
     PointerTime m_last{};
     std::uint32_t m_reports = 0;
+    /// The last reports, oldest first; those below m_released have gone to the axes.
+    std::array<Pending, k_window> m_window{};
+    std::size_t m_pending = 0;
+    std::size_t m_released = 0;
+    std::int64_t m_last_release = 0;
     Axis m_x;
     Axis m_y;
 };
 
 inline void MotionGrid::Axis::step(std::int64_t now, std::int32_t delta) noexcept {
-    if (delta == 0) {
-        return;
+    if (delta != 0) {
+        change(now, delta);
     }
-    const std::int64_t counts_now = counts + delta;
-    if (now >= next_sample) {
-        ramp_to(now, counts_now);
-    }
-    counts = counts_now;
-    last_change = now;
 }
 
-inline bool MotionGrid::add(PointerTime time, std::int32_t dx, std::int32_t dy) noexcept {
-    if (m_reports == 0) {
-        begin(time);
+/// Still until `from`, then straight to `position` at `to`.
+inline void MotionGrid::Axis::ramp(std::int64_t from, std::int64_t to, double position) noexcept {
+    if (m_next_sample <= to) {
+        fill(from, to, position);
     }
-    const std::int64_t now = (time - m_origin).count();
-    if (now > m_span_us) {
-        return false;
-    }
-    m_x.step(now, dx);
-    m_y.step(now, dy);
-    m_last = time;
-    ++m_reports;
-    return true;
+    m_ramped = position;
 }
 
 } // namespace sagitta::estimator

@@ -21,19 +21,24 @@ struct Peak {
     double value;
 };
 
-// The vertex of the parabola through three equally spaced values.
+// The vertex of the parabola fitted to the seven samples around the highest: less at the mercy of
+// jitter than that sample itself. Source of the weights: Savitzky & Golay (1964).
 Peak refine_peak(std::span<const double> values, std::size_t i) {
-    if (i == 0 || i + 1 >= values.size()) {
-        return {static_cast<double>(i), values[i]};
+    constexpr std::size_t k_reach = 3;
+    const Peak highest{static_cast<double>(i), values[i]};
+    if (i < k_reach || i + k_reach >= values.size()) {
+        return highest;
     }
-    const double before = values[i - 1];
-    const double behind = values[i + 1];
-    const double curvature = before - 2.0 * values[i] + behind;
-    if (curvature >= 0.0) {
-        return {static_cast<double>(i), values[i]};
+    const double* const v = values.data() + i;
+    const double level =
+        (7.0 * v[0] + 6.0 * (v[1] + v[-1]) + 3.0 * (v[2] + v[-2]) - 2.0 * (v[3] + v[-3])) / 21.0;
+    const double slope = ((v[1] - v[-1]) + 2.0 * (v[2] - v[-2]) + 3.0 * (v[3] - v[-3])) / 28.0;
+    const double bend = (-4.0 * v[0] - 3.0 * (v[1] + v[-1]) + 5.0 * (v[3] + v[-3])) / 84.0;
+    const double shift = -0.5 * slope / bend;
+    if (!(bend < 0.0) || std::abs(shift) > static_cast<double>(k_reach)) {
+        return highest;
     }
-    const double shift = 0.5 * (before - behind) / curvature;
-    return {static_cast<double>(i) + shift, values[i] - 0.25 * (before - behind) * shift};
+    return {static_cast<double>(i) + shift, level + 0.5 * slope * shift};
 }
 
 // Length along the samples [first, last]. Before and behind them the straight way counts, so that

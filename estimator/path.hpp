@@ -51,7 +51,7 @@ struct Path {
 ///    forward and backward by a second-order Butterworth filter, -3 dB at k_path_cutoff_hz after
 ///    both passes.
 /// 2. Velocity is the central difference of the filtered path in mm; the peak of speed is that of
-///    the parabola through the highest sample and its neighbours.
+///    the parabola fitted to the seven samples around the highest.
 /// 3. Start and end are the first and the last crossing of k_speed_threshold of the peak, by
 ///    linear interpolation.
 /// 4. A gain table acts on the smooth speed; a flat gain is a factor.

@@ -4,8 +4,10 @@
 #include "estimator/path.hpp"
 #include "estimator/scorer.hpp"
 
+#include <algorithm>
 #include <array>
 #include <cmath>
+#include <cstdlib>
 #include <limits>
 #include <utility>
 
@@ -17,6 +19,7 @@ constexpr PointerTime k_never{Micros{std::numeric_limits<Micros::rep>::min() / 4
 
 // A run may last this many times the longest movement before it counts as wandering.
 constexpr int k_run_span_factor = 2;
+constexpr int k_unseen_steps = 4;
 
 struct Displacement {
     double x_px;
@@ -30,6 +33,14 @@ struct PointerRun {
 
     Calibration calibration;
     MotionGrid grid;
+    /// How much of a still gap may be slow motion that a coarse sensor does not show. A hand that
+    /// comes to rest by minimum jerk covers its last half step in about twice the time of the step
+    /// before; setting out is alike, so a gap hides up to four such times.
+    [[nodiscard]] Micros unseen() const {
+        const Micros step = (last_motion - motion_before) / std::max(last_counts, 1);
+        return std::min(k_unseen_steps * step, k_longest_ramp);
+    }
+
     ButtonSet held = 0;
     bool lost = false;      ///< reports are missing since the last rest or press
     bool wandering = false; ///< the run outgrew the grid
@@ -40,6 +51,8 @@ struct PointerRun {
     std::uint32_t wander_reports = 0;
 
     PointerTime last_motion = k_never;
+    PointerTime motion_before = k_never; ///< the motion report before the last
+    std::int32_t last_counts = 1;        ///< of the last motion report, the larger axis
     PointerTime last_press = k_never;
     Displacement since_press{0.0, 0.0};
 };
@@ -160,7 +173,8 @@ inline void Pipeline::State::take_motion(PointerIndex pointer, PointerRun& run,
         }
         mover = static_cast<std::size_t>(pointer);
     }
-    const bool rested = report.time - run.last_motion >= rules.segmentation.rest;
+    const bool rested = report.time - run.last_motion >= rules.segmentation.rest &&
+                        report.time - run.last_motion >= rules.segmentation.rest + run.unseen();
     if (rested) [[unlikely]] {
         break_off(pointer, run, Outcome::no_press);
         run.lost = false;
@@ -168,6 +182,8 @@ inline void Pipeline::State::take_motion(PointerIndex pointer, PointerRun& run,
     if (run.grid.empty()) [[unlikely]] {
         run.started_in_motion = !rested;
     }
+    run.motion_before = run.last_motion;
+    run.last_counts = std::max(std::abs(report.dx), std::abs(report.dy));
     run.last_motion = report.time;
     if (!run.grid.add(report.time, report.dx, report.dy)) [[unlikely]] {
         outgrow(run);

@@ -2,7 +2,6 @@
 
 #include "estimator/deviation.hpp"
 #include "estimator/smoothness.hpp"
-#include "estimator/submovements.hpp"
 #include "estimator/turns.hpp"
 
 #include <algorithm>
@@ -25,6 +24,22 @@ double interpolate(std::span<const double> values, double place) {
 
 } // namespace
 
+Scorer::Scorer()
+    : m_tremor_filter{
+          LowPass::butterworth2(dual_pass_cutoff(k_submovement_cutoff_hz), k_sample_rate_hz)} {}
+
+Submovements Scorer::find_pieces(const Path& path, double cosine, double sine) {
+    m_vx.assign(path.vx_mm_s.begin(), path.vx_mm_s.end());
+    m_vy.assign(path.vy_mm_s.begin(), path.vy_mm_s.end());
+    zero_phase(m_tremor_filter, m_vx, m_vy);
+    const std::size_t size = path.last - path.first + 1;
+    m_along_velocity.resize(size);
+    for (std::size_t i = 0; i < size; ++i) {
+        m_along_velocity[i] = m_vx[path.first + i] * cosine + m_vy[path.first + i] * sine;
+    }
+    return find_submovements(m_along_velocity, k_least_prominence.value());
+}
+
 Scores Scorer::score(const Path& path, const ScoreRules& rules) {
     Scores scores;
     const double distance = std::hypot(path.press_x_px, path.press_y_px);
@@ -44,13 +59,11 @@ Scores Scorer::score(const Path& path, const ScoreRules& rules) {
     const std::size_t size = path.last - path.first + 1;
     m_along.resize(size);
     m_across.resize(size);
-    m_along_velocity.resize(size);
     for (std::size_t i = 0; i < size; ++i) {
         const double x = path.x_px[first + i];
         const double y = path.y_px[first + i];
         m_along[i] = x * cosine + y * sine;
         m_across[i] = y * cosine - x * sine;
-        m_along_velocity[i] = path.vx_mm_s[first + i] * cosine + path.vy_mm_s[first + i] * sine;
     }
 
     const Deviation strayed = deviation(m_across);
@@ -64,7 +77,7 @@ Scores Scorer::score(const Path& path, const ScoreRules& rules) {
     scores.direction_changes = turning_points(m_across, band);
     scores.orthogonal_changes = turning_points(m_along, band);
 
-    const Submovements pieces = find_submovements(m_along_velocity);
+    const Submovements pieces = find_pieces(path, cosine, sine);
     scores.submovements = pieces.count;
     scores.primary_fraction = interpolate(m_along, pieces.primary_end) / distance;
     scores.primary_lateral = Pixels::of(interpolate(m_across, pieces.primary_end));

@@ -25,7 +25,8 @@ struct Inflections {
 
 class Profile {
 public:
-    explicit Profile(std::span<const double> velocity) : m_velocity{velocity} {
+    Profile(std::span<const double> velocity, double least_prominence)
+        : m_velocity{velocity}, m_prominence{least_prominence} {
         for (std::size_t i = 0; i < velocity.size(); ++i) {
             m_prominence = std::max(m_prominence, k_prominence * speed(i));
         }
@@ -86,7 +87,7 @@ private:
     [[nodiscard]] Inflections split(std::size_t begin, std::size_t end, double floor) const;
 
     std::span<const double> m_velocity;
-    double m_prominence = 0.0;
+    double m_prominence;
 };
 
 /// Inflections among the intervals [begin, end), which together stand out: two parts count apart
@@ -198,8 +199,9 @@ private:
 
 } // namespace
 
-Submovements find_submovements(std::span<const double> along_velocity) noexcept {
-    const Profile profile{along_velocity};
+Submovements find_submovements(std::span<const double> along_velocity,
+                               double least_prominence) noexcept {
+    const Profile profile{along_velocity, least_prominence};
     if (!(profile.prominence() > 0.0)) {
         return {1, static_cast<double>(profile.size() - 1)};
     }

@@ -34,6 +34,8 @@ struct Submovements {
 /// Allocates nothing.
 /// @param along_velocity  velocity along the task axis, + = towards the press, any unit, n >= 3,
 ///                        equally spaced
-[[nodiscard]] Submovements find_submovements(std::span<const double> along_velocity) noexcept;
+/// @param least_prominence  >= 0, the same unit: what stands out by less is not counted either
+[[nodiscard]] Submovements find_submovements(std::span<const double> along_velocity,
+                                             double least_prominence = 0.0) noexcept;
 
 } // namespace sagitta::estimator

@@ -1,4 +1,4 @@
-// bench_replay SAGITTA [MILLIONS_OF_EVENTS [FOLDER]]
+// bench_replay [MILLIONS_OF_EVENTS [FOLDER]]
 //
 // Writes a recording of simulated desk work at 1000 reports/s, then compares, process by process
 // and in one run, the CPU time of `sagitta replay` into a fresh store with that of a bare loop
@@ -116,13 +116,13 @@ std::uint64_t generate(const fs::path& file, std::uint64_t bytes) {
 } // namespace
 
 int main(int argc, char** argv) {
-    if (argc < 2) {
-        give_up("usage: bench_replay SAGITTA [MILLIONS_OF_EVENTS [FOLDER]]");
+    const std::string program = SAGITTA_PROGRAM;
+    const double millions = argc > 1 ? std::atof(argv[1]) : 50.0;
+    if (!(millions > 0.0)) {
+        give_up("usage: bench_replay [MILLIONS_OF_EVENTS [FOLDER]]");
     }
-    const std::string program = argv[1];
-    const double millions = argc > 2 ? std::atof(argv[2]) : 50.0;
-    const fs::path folder =
-        (argc > 3 ? fs::path{argv[3]} : fs::temp_directory_path()) / "sagitta-bench-replay";
+    const fs::path folder = (argc > 2 ? fs::path{argv[2]} : fs::temp_directory_path()) /
+                            ("sagitta-bench-replay-" + std::to_string(getpid()));
     fs::remove_all(folder);
     fs::create_directories(folder);
     const fs::path whole = folder / "whole.raw";

@@ -289,3 +289,23 @@ TEST_CASE("a gain table shapes the screen plane and leaves the hand plane alone"
     CHECK(shaped.hand_travel.value() == doctest::Approx(flat.hand_travel.value()));
     CHECK(shaped.movement_time == flat.movement_time);
 }
+
+TEST_CASE("a table made for normalised counts is brought to the pointer's own resolution") {
+    // Source: the documented rule that desktops bring finer pointers to 1000 CPI, slower ones not.
+    const Gain table =
+        Gain::table({{MillimetresPerSecond::of(10.0), 1.0}, {MillimetresPerSecond::of(100.0), 2.0}})
+            .value();
+    const auto factor = [&](double udev_cpi, double hand_speed) {
+        PointerDescription pointer;
+        pointer.udev_cpi = Cpi::of(udev_cpi);
+        const Calibration calibration =
+            calibrate(pointer, std::nullopt, CpiSource::config, table, Cpi::of(1000.0));
+        return calibration.px_per_count_x *
+               calibration.gain.factor_at(MillimetresPerSecond::of(hand_speed));
+    };
+    CHECK(factor(1000.0, 55.0) == doctest::Approx(1.5));
+    // 1600 CPI: counts times 0.625, the speed is what the hand does.
+    CHECK(factor(1600.0, 55.0) == doctest::Approx(0.625 * 1.5));
+    // 400 CPI: counts as they are, which look like 0.4 times the speed.
+    CHECK(factor(400.0, 55.0 / 0.4) == doctest::Approx(1.5));
+}

@@ -162,6 +162,18 @@ TEST_CASE("the unit of velocity does not matter") {
     CHECK(after.primary_end == doctest::Approx(before.primary_end).epsilon(1e-9));
 }
 
+TEST_CASE("what stands out by less than the least prominence is not counted") {
+    std::vector<double> velocity(120, 0.0);
+    for (std::size_t i = 0; i < 60; ++i) {
+        const double phase = std::sin(3.14159265358979 * static_cast<double>(i) / 59.0);
+        velocity[i] = 10.0 * phase * phase;
+        velocity[i + 60] = 2.0 * phase * phase;
+    }
+    CHECK(find_submovements(velocity).count == 2);
+    CHECK(find_submovements(velocity, 1.5).count == 2);
+    CHECK(find_submovements(velocity, 2.5).count == 1);
+}
+
 TEST_CASE("any profile has at least one piece and an end within it") {
     std::mt19937_64 random{29};
     for (int run = 0; run < 4000; ++run) {
