@@ -14,7 +14,7 @@ namespace fs = std::filesystem;
 namespace {
 
 /// Up to this size reading every page on opening costs a few milliseconds.
-constexpr std::uintmax_t k_small_file = 4U << 20U;
+constexpr std::uintmax_t k_small_file = 1U << 20U;
 
 bool log_has_writes(const fs::path& file) {
     std::error_code error;
@@ -105,6 +105,9 @@ Result<Database> open_sound_file(const fs::path& file, Mode mode, const OpenOpti
     }
     Result<void> ready{};
     if (writing) {
+        if (database->is_read_only() && is_writable(file)) { // SQLite saw an unknown write format
+            return tl::unexpected{damaged_error(file.native(), "its header is broken")};
+        }
         if (database->is_read_only()) {
             return fail(ErrorCode::no_permission,
                         file.native() + " may not be written by this user: change the owner or "

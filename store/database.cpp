@@ -123,6 +123,10 @@ Result<Database> Database::open(const std::filesystem::path& file, Access access
     // The file may be broken or made by somebody else: trust nothing in its schema.
     sqlite3_db_config(raw, SQLITE_DBCONFIG_DEFENSIVE, 1, nullptr);
     sqlite3_db_config(raw, SQLITE_DBCONFIG_TRUSTED_SCHEMA, 0, nullptr);
+    // The first statement reads the schema; prepare() tells a broken one.
+    if (const auto schema = database.prepare("SELECT 1 FROM sqlite_schema"); !schema) {
+        return tl::unexpected{schema.error()};
+    }
     auto set = database.run("PRAGMA cell_size_check = ON; PRAGMA cache_size = -1024;");
     if (set && access != Access::write) {
         set = database.run("PRAGMA query_only = ON;");

@@ -18,13 +18,16 @@ constexpr Scale k_tenths{10.0};
 constexpr Scale k_thousandths{1e3};
 constexpr Scale k_ten_thousandths{1e4};
 
+/// For times that do not place a movement: a tenth of a millisecond.
+using HundredMicros = std::chrono::duration<std::int64_t, std::ratio<1, 10'000>>;
+
 /// Every score in the order of the columns. One list for both directions, so that they agree.
 template <class AnyScores, class Coder>
 void for_each_score(AnyScores& scores, Coder& coder) {
     coder.number(scores.distance, k_hundredths);
     coder.direction(scores.direction);
     coder.time(scores.movement_time);
-    coder.time(scores.dwell);
+    coder.coarse_time(scores.dwell);
     coder.number(scores.path, k_hundredths);
     coder.number(scores.error, k_hundredths);
     coder.number(scores.offset, k_hundredths);
@@ -34,7 +37,7 @@ void for_each_score(AnyScores& scores, Coder& coder) {
     coder.count(scores.direction_changes);
     coder.count(scores.orthogonal_changes);
     coder.number(scores.peak_speed, k_tenths);
-    coder.time(scores.time_to_peak);
+    coder.coarse_time(scores.time_to_peak);
     coder.count(scores.submovements);
     coder.number(scores.primary_fraction, k_ten_thousandths);
     coder.number(scores.primary_lateral, k_hundredths);
@@ -61,6 +64,7 @@ public:
 
     void integer(std::int64_t value) { m_statement.bind_integer(value); }
     void time(Micros value) { integer(value.count()); }
+    void coarse_time(Micros value) { integer(std::chrono::round<HundredMicros>(value).count()); }
     void number(double value, Scale scale) { m_statement.bind_integer(steps_of(value, scale)); }
     template <class Unit>
     void number(estimator::Quantity<Unit> value, Scale scale) {
@@ -93,6 +97,7 @@ public:
     [[nodiscard]] std::int64_t integer() { return m_row.integer(m_column++); }
     [[nodiscard]] estimator::UtcTime utc() { return estimator::UtcTime{Micros{integer()}}; }
     void time(Micros& value) { value = Micros{integer()}; }
+    void coarse_time(Micros& value) { value = HundredMicros{integer()}; }
     /// Dividing gives the double nearest to the decimal, which prints as that decimal.
     void number(double& value, Scale scale) {
         value = m_row.is_null(m_column)
@@ -129,9 +134,9 @@ private:
 
 const char* movement_columns() {
     return "press_us, pointer, condition, kind, button, distance_centipx, direction_decideg, "
-           "movement_time_us, dwell_us, path_centipx, error_centipx, offset_centipx, "
+           "movement_time_us, dwell_100us, path_centipx, error_centipx, offset_centipx, "
            "variability_centipx, max_deviation_centipx, axis_crossings, direction_changes, "
-           "orthogonal_changes, peak_speed_decimm_s, time_to_peak_us, submovements, "
+           "orthogonal_changes, peak_speed_decimm_s, time_to_peak_100us, submovements, "
            "primary_fraction_e4, primary_lateral_centipx, initial_angle_decideg, "
            "smoothness_sparc_e3, smoothness_ldlj_e3, hand_travel_centimm, reports, flags";
 }

@@ -25,6 +25,30 @@ void keep_log(sqlite3* database, const std::string& file) {
     }
 }
 
+int last_errno_of(sqlite3_file* file) {
+    int number = 0;
+    if (file && file->pMethods) {
+        file->pMethods->xFileControl(file, SQLITE_FCNTL_LAST_ERRNO, &number);
+    }
+    return number;
+}
+
+/// errno of the failed call. SQLite passes it on for opening only; for writing it stays with the
+/// file that was written, the log or the journal before the file itself.
+int system_number(sqlite3* database) {
+    if (!database) {
+        return 0;
+    }
+    int number = sqlite3_system_errno(database);
+    for (const int which : {SQLITE_FCNTL_JOURNAL_POINTER, SQLITE_FCNTL_FILE_POINTER}) {
+        sqlite3_file* file = nullptr;
+        if (number == 0 && sqlite3_file_control(database, "main", which, &file) == SQLITE_OK) {
+            number = last_errno_of(file);
+        }
+    }
+    return number;
+}
+
 bool is_lack_of_space(int number) {
     return number == ENOSPC || number == EDQUOT || number == EFBIG;
 }
@@ -68,7 +92,7 @@ Error system_error(const std::string& doing, const std::string& file, int number
 Error error_of(sqlite3* database, int code) {
     const std::string file = file_of(database);
     const std::string reason = database ? sqlite3_errmsg(database) : sqlite3_errstr(code);
-    const int number = database ? sqlite3_system_errno(database) : 0;
+    const int number = system_number(database);
     switch (code & 0xff) {
     case SQLITE_BUSY:
     case SQLITE_LOCKED:
