@@ -29,11 +29,11 @@ std::string named(const PointerNode& node) {
     return "'" + node.description.name + "' (" + shown(node.node) + ")";
 }
 
-template <std::size_t Bytes>
-bool set_mask(int fd, std::uint32_t type, const std::array<std::uint8_t, Bytes>& codes) {
+template <std::size_t Codes>
+bool set_mask(int fd, std::uint32_t type, const CodeBits<Codes>& codes) {
     input_mask mask{};
     mask.type = type;
-    mask.codes_size = static_cast<std::uint32_t>(codes.size());
+    mask.codes_size = static_cast<std::uint32_t>(codes.bytes());
     mask.codes_ptr = reinterpret_cast<std::uintptr_t>(codes.data());
     return ::ioctl(fd, EVIOCSMASK, &mask) == 0;
 }
@@ -62,12 +62,12 @@ std::optional<estimator::AxisResolution> resolution_of(const libevdev* device) {
 
 /// What touches the device now, as the kernel knows it.
 std::vector<std::uint16_t> contacts_now(int fd) {
-    std::array<std::uint8_t, KEY_CNT / 8> keys{};
+    CodeBits<KEY_CNT> keys;
     std::vector<std::uint16_t> down;
-    if (::ioctl(fd, EVIOCGKEY(keys.size()), keys.data()) < 0)
+    if (::ioctl(fd, EVIOCGKEY(keys.bytes()), keys.data()) < 0)
         return down;
     for (const std::uint16_t code : k_contact_codes)
-        if ((keys[code / 8] >> code % 8 & 1) != 0)
+        if (keys.has(code))
             down.push_back(code);
     return down;
 }

@@ -5,7 +5,6 @@
 
 #include <array>
 #include <cstddef>
-#include <cstdint>
 #include <linux/input.h>
 
 namespace sagitta::input {
@@ -16,13 +15,31 @@ namespace sagitta::input {
     return (codes + k_bits_per_long - 1) / k_bits_per_long * sizeof(long);
 }
 
-/// Bitmaps as EVIOCSMASK takes them. Whatever is not in them stays in the kernel: key codes other
-/// than pointer buttons, scan codes, positions of single fingers.
+/// A bitmap of the kernel: whole longs, or EVIOCSMASK refuses it (linux, drivers/input/evdev.c,
+/// bits_from_user).
+template <std::size_t Codes>
+class CodeBits {
+public:
+    void allow(std::size_t code) { m_words[code / k_bits] |= 1ul << code % k_bits; }
+    [[nodiscard]] bool has(std::size_t code) const {
+        return (m_words[code / k_bits] >> code % k_bits & 1ul) != 0;
+    }
+    [[nodiscard]] const unsigned long* data() const { return m_words.data(); }
+    [[nodiscard]] unsigned long* data() { return m_words.data(); }
+    static constexpr std::size_t bytes() { return sizeof m_words; }
+
+private:
+    static constexpr std::size_t k_bits = 8 * sizeof(unsigned long);
+    std::array<unsigned long, (Codes + k_bits - 1) / k_bits> m_words{};
+};
+
+/// What may pass, by type. Whatever is not in it stays in the kernel: key codes other than pointer
+/// buttons, scan codes, places of single fingers.
 struct EventMask {
-    std::array<std::uint8_t, mask_bytes(KEY_CNT)> keys{};
-    std::array<std::uint8_t, mask_bytes(REL_CNT)> relative{};
-    std::array<std::uint8_t, mask_bytes(ABS_CNT)> absolute{};
-    std::array<std::uint8_t, mask_bytes(EV_CNT)> types{};
+    CodeBits<EV_CNT> types;
+    CodeBits<KEY_CNT> keys;
+    CodeBits<REL_CNT> relative;
+    CodeBits<ABS_CNT> absolute;
 };
 
 [[nodiscard]] EventMask event_mask(estimator::PointerKind kind);

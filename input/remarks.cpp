@@ -6,7 +6,7 @@ namespace {
 
 void tell(std::vector<std::string>& sentences, std::uint64_t count, const std::string& what) {
     if (count > 0)
-        sentences.push_back(std::to_string(count) + " x " + what);
+        sentences.push_back(what + ": " + std::to_string(count));
 }
 
 } // namespace
@@ -24,7 +24,7 @@ void Remarks::say(std::string sentence) {
 std::vector<std::string> Remarks::sentences(std::span<const PacketAssembler> pointers) const {
     std::vector<std::string> all = m_said;
     for (const auto& [kind, counted] : m_counted)
-        all.push_back("skipped " + std::to_string(counted.count) + " " + kind + ", the first at " +
+        all.push_back(kind + ", skipped: " + std::to_string(counted.count) + ", the first at " +
                       counted.first);
     std::uint64_t drops = 0;
     std::uint64_t reversed = 0;
@@ -34,9 +34,9 @@ std::vector<std::string> Remarks::sentences(std::span<const PacketAssembler> poi
         reversed += pointer.reversed_stamps();
         impossible += pointer.impossible_deltas();
     }
-    tell(all, drops, "the kernel lost events while recording (SYN_DROPPED)");
-    tell(all, reversed, "a stamp ran backwards or was no time, taken as a loss");
-    tell(all, impossible, "a packet moved by more than 32767 counts, its motion was left out");
+    tell(all, drops, "places where the kernel lost events while recording (SYN_DROPPED)");
+    tell(all, reversed, "stamps that ran backwards or were no time, taken as losses");
+    tell(all, impossible, "packets that moved by more than 32767 counts, their motion left out");
     return all;
 }
 

@@ -14,11 +14,6 @@ using estimator::PointerKind;
 
 namespace {
 
-template <std::size_t Bytes>
-bool lets_through(const std::array<std::uint8_t, Bytes>& bits, std::size_t code) {
-    return (bits[code / 8] >> code % 8 & 1) != 0;
-}
-
 /// A non-blocking pipe stands for an event node.
 class Node {
 public:
@@ -62,30 +57,38 @@ TEST_CASE("the event mask keeps every key but pointer buttons in the kernel") {
           PointerKind::touchpad, PointerKind::absolute}) {
         const input::EventMask mask = input::event_mask(kind);
         for (std::size_t code = 0; code < BTN_LEFT; ++code)
-            CHECK_FALSE(lets_through(mask.keys, code));
+            CHECK_FALSE(mask.keys.has(code));
         for (std::size_t code = BTN_LEFT; code <= BTN_TASK; ++code)
-            CHECK(lets_through(mask.keys, code));
+            CHECK(mask.keys.has(code));
         for (std::size_t code = KEY_OK; code < KEY_CNT; ++code)
-            CHECK_FALSE(lets_through(mask.keys, code));
-        CHECK(lets_through(mask.types, EV_SYN));
-        CHECK_FALSE(lets_through(mask.types, EV_MSC));
-        CHECK(lets_through(mask.relative, REL_HWHEEL_HI_RES));
-        CHECK_FALSE(lets_through(mask.relative, REL_MISC));
+            CHECK_FALSE(mask.keys.has(code));
+        CHECK(mask.types.has(EV_SYN));
+        CHECK_FALSE(mask.types.has(EV_MSC));
+        CHECK(mask.relative.has(REL_HWHEEL_HI_RES));
+        CHECK_FALSE(mask.relative.has(REL_MISC));
     }
+}
+
+TEST_CASE("the event mask is made of whole longs, as the kernel demands") {
+    using Mask = input::EventMask;
+    CHECK(decltype(Mask::types)::bytes() % sizeof(long) == 0);
+    CHECK(decltype(Mask::keys)::bytes() % sizeof(long) == 0);
+    CHECK(decltype(Mask::relative)::bytes() % sizeof(long) == 0);
+    CHECK(decltype(Mask::absolute)::bytes() % sizeof(long) == 0);
 }
 
 TEST_CASE("only absolute devices may send places and contacts") {
     const input::EventMask mouse = input::event_mask(PointerKind::mouse);
-    CHECK_FALSE(lets_through(mouse.types, EV_ABS));
-    CHECK_FALSE(lets_through(mouse.keys, BTN_TOUCH));
+    CHECK_FALSE(mouse.types.has(EV_ABS));
+    CHECK_FALSE(mouse.keys.has(BTN_TOUCH));
     const input::EventMask touchpad = input::event_mask(PointerKind::touchpad);
-    CHECK(lets_through(touchpad.types, EV_ABS));
-    CHECK(lets_through(touchpad.absolute, ABS_X));
-    CHECK_FALSE(lets_through(touchpad.absolute, ABS_MT_POSITION_X));
-    CHECK(lets_through(touchpad.keys, BTN_TOUCH));
-    CHECK(lets_through(touchpad.keys, BTN_TOOL_FINGER));
-    CHECK_FALSE(lets_through(touchpad.keys, BTN_STYLUS));
-    CHECK(lets_through(input::event_mask(PointerKind::absolute).keys, BTN_STYLUS));
+    CHECK(touchpad.types.has(EV_ABS));
+    CHECK(touchpad.absolute.has(ABS_X));
+    CHECK_FALSE(touchpad.absolute.has(ABS_MT_POSITION_X));
+    CHECK(touchpad.keys.has(BTN_TOUCH));
+    CHECK(touchpad.keys.has(BTN_TOOL_FINGER));
+    CHECK_FALSE(touchpad.keys.has(BTN_STYLUS));
+    CHECK(input::event_mask(PointerKind::absolute).keys.has(BTN_STYLUS));
 }
 
 TEST_CASE("reading takes all that is there and does not wait for more") {
