@@ -1,6 +1,7 @@
 #include "estimator/hand/aimed_path.hpp"
 
 #include <algorithm>
+#include <cmath>
 #include <numbers>
 
 namespace sagitta::estimator::hand {
@@ -117,14 +118,39 @@ void AimedPath::add(const Submovement& submovement) noexcept {
                                    : Point{0.0, 1.0};
     // An S-bend of height 1 peaks at s = (3 -+ sqrt 3) / 6, where 4 s (1 - s)(1 - 2 s) = 0.3849.
     constexpr double k_bend_peak = 0.38490017945975052;
-    m_strokes[m_count++] = {submovement.start_s, 1.0 / submovement.duration_s, submovement.by,
-                            left * submovement.bow_mm, left * (submovement.bend_mm / k_bend_peak)};
+    const Point bow = left * (4.0 * submovement.bow_mm);
+    const Point bend = left * (4.0 * submovement.bend_mm / k_bend_peak);
+    m_strokes[m_count++] = {submovement.start_s, 1.0 / submovement.duration_s,
+                            submovement.by + bow + bend, bow * -1.0 + bend * -3.0, bend * 2.0};
     m_motion_s = std::max(m_motion_s, submovement.start_s + submovement.duration_s);
 }
 
 void AimedPath::set_tremor(const Tremor& tremor) noexcept {
     m_tremor = tremor;
     m_trembles = true;
+}
+
+Point AimedPath::position_at(double time_s) const noexcept {
+    Point at;
+    for (std::size_t i = 0; i < m_count; ++i) {
+        const Stroke& stroke = m_strokes[i];
+        stroke.add_to(at, minimum_jerk((time_s - stroke.start_s) * stroke.rate_per_s));
+    }
+    if (m_trembles && time_s > 0.0 && time_s < m_motion_s) {
+        const double envelope = tremor_envelope(time_s);
+        const double angle = 2.0 * std::numbers::pi * m_tremor.frequency_hz * time_s;
+        add_tremor(at, envelope * std::cos(angle), envelope * std::sin(angle));
+    }
+    return at;
+}
+
+PathWalk::PathWalk(const AimedPath& path, double from_s, double step_s) noexcept
+    : m_path{path}, m_time_s{from_s}, m_step_s{step_s} {
+    const double rate = 2.0 * std::numbers::pi * path.m_tremor.frequency_hz;
+    m_cosine = std::cos(rate * from_s);
+    m_sine = std::sin(rate * from_s);
+    m_turn_cosine = std::cos(rate * step_s);
+    m_turn_sine = std::sin(rate * step_s);
 }
 
 Point AimedPath::end() const noexcept {

@@ -6,7 +6,6 @@
 #include "estimator/units.hpp"
 
 #include <array>
-#include <cmath>
 #include <cstddef>
 
 namespace sagitta::estimator::hand {
@@ -42,7 +41,7 @@ struct Tremor {
 };
 
 /// Sum of submovements plus tremor; from rest to rest, then still until the press. Plain values,
-/// no allocation; position_at costs some 10 ns a submovement.
+/// no allocation.
 class AimedPath {
 public:
     static constexpr std::size_t k_max_submovements = 10;
@@ -63,16 +62,56 @@ public:
     [[nodiscard]] std::size_t submovements() const noexcept { return m_count; }
 
 private:
+    friend class PathWalk;
+    /// Place at progress s: linear s + square s^2 + cube s^3. That is, displacement s, bow
+    /// 4 s (1 - s) and S-bend 4 s (1 - s) (1 - 2 s) in one.
     struct Stroke {
         double start_s, rate_per_s;
-        Point by, bow, bend;
+        Point linear, square, cube;
+
+        void add_to(Point& at, double s) const noexcept {
+            at.x_mm += s * (linear.x_mm + s * (square.x_mm + s * cube.x_mm));
+            at.y_mm += s * (linear.y_mm + s * (square.y_mm + s * cube.y_mm));
+        }
     };
+    /// Share of the tremor that shows: it grows and dies with the motion.
+    [[nodiscard]] double tremor_envelope(double time_s) const noexcept {
+        constexpr double k_ramp_s = 0.08;
+        const double left_s = m_motion_s - time_s;
+        if (time_s >= k_ramp_s && left_s >= k_ramp_s) {
+            return 1.0;
+        }
+        return minimum_jerk(time_s / k_ramp_s) * minimum_jerk(left_s / k_ramp_s);
+    }
+    void add_tremor(Point& at, double cosine, double sine) const noexcept {
+        at.x_mm += m_tremor.cosine.x_mm * cosine + m_tremor.sine.x_mm * sine;
+        at.y_mm += m_tremor.cosine.y_mm * cosine + m_tremor.sine.y_mm * sine;
+    }
+
     std::array<Stroke, k_max_submovements> m_strokes{};
     std::size_t m_count = 0;
     Tremor m_tremor;
     bool m_trembles = false;
     double m_motion_s = 0.0;
     double m_dwell_s = 0.0;
+};
+
+/// A path at equally spaced times, several times faster than position_at: what is over is summed
+/// once, and the tremor turns by one rotation a step.
+class PathWalk {
+public:
+    /// @param path  outlives the walk;  @param from_s, step_s  >= 0, > 0
+    PathWalk(const AimedPath& path, double from_s, double step_s) noexcept;
+    /// The position at from_s, then one step_s later with each call.
+    [[nodiscard]] Point next() noexcept;
+
+private:
+    const AimedPath& m_path;
+    double m_time_s, m_step_s;
+    std::size_t m_first = 0; ///< strokes before it are over
+    Point m_over;            ///< their sum
+    double m_cosine, m_sine; ///< of the tremor's angle
+    double m_turn_cosine, m_turn_sine;
 };
 
 /// What the hand is asked to do.
@@ -97,27 +136,28 @@ struct AimTask {
 [[nodiscard]] AimedPath wander(const Person& person, const Form& form, std::size_t legs,
                                Millimetres leg_distance, Random& random);
 
-inline Point AimedPath::position_at(double time_s) const noexcept {
-    Point at;
-    for (std::size_t i = 0; i < m_count; ++i) {
-        const Stroke& stroke = m_strokes[i];
-        const double s = minimum_jerk((time_s - stroke.start_s) * stroke.rate_per_s);
-        const double arc = 4.0 * s * (1.0 - s);
-        const double bend = arc * (1.0 - 2.0 * s);
-        at.x_mm += stroke.by.x_mm * s + stroke.bow.x_mm * arc + stroke.bend.x_mm * bend;
-        at.y_mm += stroke.by.y_mm * s + stroke.bow.y_mm * arc + stroke.bend.y_mm * bend;
+inline Point PathWalk::next() noexcept {
+    Point at = m_over;
+    for (std::size_t i = m_first; i < m_path.m_count; ++i) {
+        const AimedPath::Stroke& stroke = m_path.m_strokes[i];
+        const double share = (m_time_s - stroke.start_s) * stroke.rate_per_s;
+        if (share <= 0.0) {
+            continue;
+        }
+        stroke.add_to(at, minimum_jerk(share));
+        if (share >= 1.0 && i == m_first) {
+            ++m_first;
+            stroke.add_to(m_over, 1.0);
+        }
     }
-    if (m_trembles && time_s > 0.0 && time_s < m_motion_s) {
-        constexpr double k_two_pi = 6.283185307179586;
-        constexpr double k_ramp_per_s = 1.0 / 0.08;
-        const double envelope = minimum_jerk(time_s * k_ramp_per_s) *
-                                minimum_jerk((m_motion_s - time_s) * k_ramp_per_s);
-        const double angle = k_two_pi * m_tremor.frequency_hz * time_s;
-        const double c = envelope * std::cos(angle);
-        const double s = envelope * std::sin(angle);
-        at.x_mm += m_tremor.cosine.x_mm * c + m_tremor.sine.x_mm * s;
-        at.y_mm += m_tremor.cosine.y_mm * c + m_tremor.sine.y_mm * s;
+    if (m_path.m_trembles) {
+        const double envelope = m_path.tremor_envelope(m_time_s);
+        m_path.add_tremor(at, envelope * m_cosine, envelope * m_sine);
+        const double cosine = m_cosine * m_turn_cosine - m_sine * m_turn_sine;
+        m_sine = m_sine * m_turn_cosine + m_cosine * m_turn_sine;
+        m_cosine = cosine;
     }
+    m_time_s += m_step_s;
     return at;
 }
 

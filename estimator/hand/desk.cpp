@@ -210,6 +210,10 @@ Result<void> Desk::next(ReportBatch& batch) {
         state.handed_out = 0;
         state.fill();
     }
+    if (state.handed_out == 0 && state.pending.size() <= k_max_batch) {
+        batch.swap(state.pending); // the usual case: no copy
+        return {};
+    }
     const auto first = state.pending.begin() + static_cast<std::ptrdiff_t>(state.handed_out);
     const std::size_t count = std::min(state.pending.size() - state.handed_out, k_max_batch);
     batch.assign(first, first + static_cast<std::ptrdiff_t>(count));

@@ -46,16 +46,23 @@ Device::Device(PointerIndex pointer, const Electronics& electronics, std::uint64
       m_step_x{m_random.uniform()}, m_step_y{m_random.uniform()} {}
 
 void Device::move(const AimedPath& path, PointerTime start, ReportBatch& batch) {
-    sample([&path](double t) { return path.position_at(t); }, path.motion_s(), start, batch);
+    PathWalk walk{path, until_poll_us(start) * 1e-6, m_interval_us * 1e-6};
+    sample([&walk] { return walk.next(); }, path.end(), path.motion_s(), start, batch);
 }
 
 void Device::move(const std::function<Point(double)>& position, double duration_s,
                   PointerTime start, ReportBatch& batch) {
-    sample(position, duration_s, start, batch);
+    double t = until_poll_us(start) * 1e-6;
+    const auto next = [&] {
+        const Point at = position(t);
+        t += m_interval_us * 1e-6;
+        return at;
+    };
+    sample(next, position(duration_s), duration_s, start, batch);
 }
 
-template <class Position>
-void Device::sample(const Position& position, double duration_s, PointerTime start,
+template <class Next>
+void Device::sample(Next next, Point end, double duration_s, PointerTime start,
                     ReportBatch& batch) {
     const double counts_per_mm = m_electronics.cpi.value() / k_mm_per_inch;
     const double duration_us = duration_s * 1e6;
@@ -65,7 +72,7 @@ void Device::sample(const Position& position, double duration_s, PointerTime sta
     bool over = false;
     for (double t = until_poll_us(start); !over; t += m_interval_us) {
         over = t >= duration_us;
-        const Point at = position(over ? duration_s : t * 1e-6);
+        const Point at = over ? end : next();
         const std::int64_t x = whole(m_step_x + at.x_mm * counts_per_mm);
         const std::int64_t y = whole(m_step_y + at.y_mm * counts_per_mm);
         if (x == sent_x && y == sent_y) {
@@ -94,7 +101,6 @@ void Device::sample(const Position& position, double duration_s, PointerTime sta
         report.dx = dx;
         report.dy = dy;
     }
-    const Point end = position(duration_s);
     m_step_x += end.x_mm * counts_per_mm - static_cast<double>(sent_x);
     m_step_y += end.y_mm * counts_per_mm - static_cast<double>(sent_y);
 }

@@ -47,8 +47,9 @@ public:
     [[nodiscard]] PointerTime last_stamp() const { return m_last; }
 
 private:
-    template <class Position>
-    void sample(const Position& position, double duration_s, PointerTime start, ReportBatch& batch);
+    /// @param next  the position at one poll after the other, from the first after `start`
+    template <class Next>
+    void sample(Next next, Point end, double duration_s, PointerTime start, ReportBatch& batch);
     /// Time from `start` to the first poll at or after it, us.
     [[nodiscard]] double until_poll_us(PointerTime start) const;
     [[nodiscard]] PointerTime stamp(PointerTime start, double after_us);

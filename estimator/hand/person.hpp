@@ -15,7 +15,7 @@ constexpr Millimetres k_noise_distance = Millimetres::of(5.0);
 struct Person {
     /// Movement-time law: MT = intercept + ID / index_of_performance, ID = log2(D/W + 1), W the
     /// true width of the target, dwell included. Source of the form: MacKenzie (1989).
-    BitsPerSecond index_of_performance = BitsPerSecond::of(3.6);
+    BitsPerSecond index_of_performance = BitsPerSecond::of(3.65);
     Micros intercept = std::chrono::milliseconds{310};
     double time_spread = 0.39;     ///< SD of log MT from movement to movement
     double session_spread = 0.055; ///< SD of log MT from session to session
@@ -27,12 +27,12 @@ struct Person {
     /// 4 % of the presses miss along the axis).
     double endpoint_spread = 0.9;
     double primary_undershoot = 0.04; ///< share of D by which the primary submovement falls short
-    double primary_spread = 0.16;     ///< SD of its end along the axis, share of D
+    double primary_spread = 0.18;     ///< SD of its end along the axis, share of D
     double correction_spread = 0.25;  ///< SD of a correction's end, share of what it corrects
 
     /// SD of the random bow (height above the chord), share of D at k_noise_distance. The next
     /// three apply to the place of detours and the lateral end of strokes as well.
-    double lateral_noise = 0.040;
+    double lateral_noise = 0.036;
     double lateral_spread = 0.50;         ///< SD of the log of the noise from movement to movement
     double lateral_growth = 0.75;         ///< noise ~ D to this power
     double lateral_session_spread = 0.15; ///< SD of the log of the noise from session to session
@@ -40,9 +40,9 @@ struct Person {
 
     /// Share of the movements that set out for somewhere else and are redirected in flight.
     double detour_share = 0.47;
-    double detour_spread = 0.32; ///< SD of the detour's place, each axis, share of D
+    double detour_spread = 0.25; ///< SD of the detour's place, each axis, share of D
 
-    Millimetres tremor_amplitude = Millimetres::of(0.015);
+    Millimetres tremor_amplitude = Millimetres::of(0.024);
     double tremor_low_hz = 8.0, tremor_high_hz = 12.0; ///< drawn anew for each movement
 };
 

@@ -2,6 +2,7 @@
 #include "estimator/moments.hpp"
 #include "estimator/regression.hpp"
 
+#include <algorithm>
 #include <cmath>
 #include <doctest/doctest.h>
 #include <vector>
@@ -170,6 +171,25 @@ TEST_CASE("a systematic bow shows on the left of every direction") {
         const double net = std::hypot(end.x_mm, end.y_mm);
         const double left = (middle.y_mm * end.x_mm - middle.x_mm * end.y_mm) / net;
         CHECK(left == doctest::Approx(0.05 * net));
+    }
+}
+
+TEST_CASE("walking a path gives the same places as asking for each") {
+    const Person person;
+    for (std::uint64_t seed = 1; seed <= 40; ++seed) {
+        Random random{seed};
+        const AimedPath path = aim(person, {}, task(30.0, 1.0, 75.0), random);
+        constexpr double k_from = 0.0007;
+        constexpr double k_step = 0.001;
+        PathWalk walk{path, k_from, k_step};
+        double farthest = 0.0;
+        for (int i = 0; k_from + i * k_step < path.motion_s() + 0.1; ++i) {
+            const Point walked = walk.next();
+            const Point asked = path.position_at(k_from + i * k_step);
+            farthest = std::max(
+                {farthest, std::abs(walked.x_mm - asked.x_mm), std::abs(walked.y_mm - asked.y_mm)});
+        }
+        CHECK(farthest < 1e-9);
     }
 }
 
