@@ -7,8 +7,6 @@ namespace sagitta::daemon {
 
 namespace {
 
-constexpr int k_window = 8;
-
 bool at_every_poll(const estimator::Report& report) {
     return std::abs(report.dx) + std::abs(report.dy) >= 2;
 }
@@ -22,23 +20,26 @@ void BatchRhythm::learn(std::span<const estimator::Report> reports) {
             m_interval.reset();
         }
         if (report.after_loss || !at_every_poll(report)) {
-            m_window_intervals = -1;
+            m_last_fast.reset();
             continue;
         }
-        if (m_window_intervals < 0) {
-            m_window_start = report.time;
+        if (m_last_fast) {
+            m_window[m_filled++] = report.time - *m_last_fast;
         }
-        if (++m_window_intervals == k_window) {
-            learn_window((report.time - m_window_start) / k_window);
-            m_window_start = report.time;
-            m_window_intervals = 0;
+        m_last_fast = report.time;
+        if (m_filled == m_window.size()) {
+            m_filled = 0;
+            learn_window();
         }
     }
 }
 
 // Down at once, since a full buffer loses reports; up slowly, so that a burst of late reports is
 // forgotten after a while.
-void BatchRhythm::learn_window(estimator::Micros interval) {
+void BatchRhythm::learn_window() {
+    const auto median = m_window.begin() + m_window.size() / 2 - 1;
+    std::nth_element(m_window.begin(), median, m_window.end());
+    const estimator::Micros interval = *median;
     if (!m_interval || interval < *m_interval) {
         m_interval = interval;
     } else {

@@ -5,6 +5,7 @@
 #include "estimator/report.hpp"
 #include "estimator/units.hpp"
 
+#include <array>
 #include <optional>
 #include <span>
 
@@ -26,8 +27,8 @@ constexpr estimator::Micros k_longest_period = std::chrono::milliseconds{32};
 
 /// Learns a pointer's report interval. A slow hand leaves polls without a report, so the time
 /// between reports says little by itself; but reports of two counts and more come at every poll.
-/// The mean interval over eight of those in a row is taken, so that jitter and a late report do
-/// not count.
+/// The median of eight intervals between those is taken, so that neither jitter nor a late report
+/// nor a rest counts.
 class BatchRhythm {
 public:
     /// @param reports  of this pointer, in the order of time, following those of the last call
@@ -38,11 +39,12 @@ public:
     [[nodiscard]] estimator::Micros period() const;
 
 private:
-    void learn_window(estimator::Micros interval);
+    void learn_window();
 
     std::optional<estimator::Micros> m_interval;
-    estimator::PointerTime m_window_start{};
-    int m_window_intervals = -1; ///< -1: no fast report just before
+    std::optional<estimator::PointerTime> m_last_fast; ///< a report of two counts, just before
+    std::array<estimator::Micros, 8> m_window{};
+    std::size_t m_filled = 0;
 };
 
 } // namespace sagitta::daemon
