@@ -4,6 +4,7 @@
 #include "store/schema.hpp"
 #include "store/sqlite_error.hpp"
 
+#include <cerrno>
 #include <sys/stat.h>
 #include <unistd.h>
 
@@ -98,22 +99,19 @@ Error Store::Connection::unreadable_row(const char* table) const {
 
 Result<Database> open_sound_file(const fs::path& file, Mode mode, const OpenOptions& options) {
     const bool writing = mode == Mode::read_write;
+    if (writing && !is_writable(file)) {
+        return tl::unexpected{system_error("open", file.native(), EACCES)};
+    }
     const auto access = writing ? Database::Access::write : reading_access(file);
     auto database = Database::open(file, access, options.busy_timeout);
     if (!database) {
         return database;
     }
     Result<void> ready{};
-    if (writing) {
-        if (database->is_read_only() && is_writable(file)) { // SQLite saw an unknown write format
-            return tl::unexpected{damaged_error(file.native(), "its header is broken")};
-        }
-        if (database->is_read_only()) {
-            return fail(ErrorCode::no_permission,
-                        file.native() + " may not be written by this user: change the owner or "
-                                        "the mode of the file, or name another file");
-        }
-        ready = prepare_for_writing(*database);
+    if (writing) { // the system lets us write, so only a broken header can keep SQLite from it
+        ready = database->is_read_only()
+                    ? tl::unexpected{damaged_error(file.native(), "its header is broken")}
+                    : prepare_for_writing(*database);
     }
     if (ready) {
         const auto depth = writing            ? depth_of(file, options)
