@@ -8,6 +8,7 @@
 #include <signal.h>
 #include <stdexcept>
 #include <sys/prctl.h>
+#include <sys/resource.h>
 #include <sys/socket.h>
 #include <sys/un.h>
 #include <sys/wait.h>
@@ -192,6 +193,8 @@ void Machine::start(const std::vector<std::string>& command, const std::filesyst
     }
     if (m_process == 0) {
         prctl(PR_SET_PDEATHSIG, SIGKILL);
+        // Where it is allowed, ahead of other work, so that the guest's clock runs evenly.
+        setpriority(PRIO_PROCESS, 0, -10);
         dup2(open("/dev/null", O_RDONLY), STDIN_FILENO);
         dup2(output, STDOUT_FILENO);
         dup2(output, STDERR_FILENO);

@@ -17,7 +17,8 @@ struct Packet {
     bool left_down;
 };
 
-/// @param bytes  struct input_event records; throws std::runtime_error when the kernel lost some
+/// @param bytes  struct input_event records
+/// @return nothing when the kernel lost some on the way
 [[nodiscard]] std::vector<Packet> packets_of(std::string_view bytes);
 [[nodiscard]] std::string read_file(const std::string& file);
 
@@ -37,5 +38,10 @@ struct Delay {
 /// Largest less smallest delay between two times of the plan, us.
 [[nodiscard]] std::int64_t jitter_us(const std::vector<Delay>& delays, std::int64_t from_us,
                                      std::int64_t to_us);
+
+/// The same over all that was sent; the largest number there is when the kernel's packets are not
+/// those planned.
+[[nodiscard]] std::int64_t stall_us(const std::vector<Packet>& planned,
+                                    const std::vector<Packet>& seen);
 
 } // namespace sagitta::guest
