@@ -68,6 +68,11 @@ Result<void> check(const DeskPlan& plan) {
         return fail(ErrorCode::bad_value,
                     "the simulated desk's hours must follow each other within a day");
     }
+    if (!positive(plan.targets.distance.value()) || !positive(plan.targets.width.value()) ||
+        !positive(plan.course.practice_days)) {
+        return fail(ErrorCode::bad_value, "the simulated desk's target distance, target width and "
+                                          "days of practice must be above 0");
+    }
     if (!positive(plan.person.index_of_performance.value())) {
         return fail(ErrorCode::bad_value,
                     "the simulated person's index of performance must be above 0 bit/s");

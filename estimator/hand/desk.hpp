@@ -78,7 +78,8 @@ struct DeskPlan {
     bool keep_truths = false;                         ///< collect for take_truths()
 };
 
-/// The truth of a movement that aimed at a target.
+/// The truth of a movement that aimed at a target. Movements interrupted by lifting the device and
+/// presses without motion have none.
 struct AimedTruth {
     PointerIndex pointer;
     MovementKind kind;
@@ -120,8 +121,8 @@ private:
 
 /// The map room of a county archive, where one desk tries an upright mouse (pointer 0) against a
 /// thumb trackball (pointer 1): working days in randomised, balanced pairs. On the trackball the
-/// person has 7 % fewer bits per second, after some days of practice, and a fifth more lateral
-/// noise.
+/// person has 7 % fewer bits per second and a fifth more lateral noise; on either, the first days
+/// go a little slower than the later ones, and afternoons than mornings.
 /// @param weeks  >= 1;  @param first_day  a Monday, so that weeks are whole
 [[nodiscard]] DeskPlan map_room_desk(std::uint64_t seed, int weeks,
                                      std::chrono::sys_days first_day);

@@ -223,7 +223,11 @@ TEST_CASE("a wrong plan is refused with a sentence that says why") {
     still.pointers[0].electronics.reports_per_s = 0.0;
     DeskPlan backwards = plan_of(1, 1);
     backwards.morning_end = std::chrono::hours{1};
-    for (const DeskPlan& plan : {none, unknown, still, backwards}) {
+    DeskPlan pointless = plan_of(1, 1);
+    pointless.targets.width = Pixels::zero();
+    DeskPlan powerless = plan_of(1, 1);
+    powerless.person.index_of_performance = BitsPerSecond::zero();
+    for (const DeskPlan& plan : {none, unknown, still, backwards, pointless, powerless}) {
         const auto desk = Desk::make(plan);
         REQUIRE_FALSE(desk.has_value());
         CHECK(desk.error().code == ErrorCode::bad_value);
