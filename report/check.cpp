@@ -82,11 +82,11 @@ void judge_pointers(const CheckFacts& facts, Findings& findings) {
         }
     }
     for (const input::PointerNode& node : facts.keyboard_pointers) {
-        findings.push_back({Severity::advice,
-                            quoted_name(node) + " is a pointer and a keyboard at once; it is never "
-                                                "opened, so that keys stay unread",
-                            "nothing to mend if its receiver shows another pointer above; else "
-                            "use a pointer with a node of its own"});
+        findings.push_back(
+            {Severity::advice,
+             quoted_name(node) + " is a pointer and a keyboard at once; it is never "
+                                 "opened, so that keys stay unread",
+             "nothing if its receiver shows another pointer above, else use another one"});
     }
 }
 
@@ -171,8 +171,8 @@ bool can_write(std::filesystem::path path) {
 }
 
 void look_at_store(const Session& session, CheckFacts& facts) {
-    facts.store_file = session.store_file;
     std::error_code error;
+    facts.store_file = std::filesystem::absolute(session.store_file, error);
     facts.store_exists = std::filesystem::exists(session.store_file, error);
     facts.store_writable = can_write(session.store_file);
     if (facts.store_exists) {

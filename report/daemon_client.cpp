@@ -165,6 +165,10 @@ Result<Json> ask_daemon(const std::string& request) {
 
 Result<Output> run_daemon_order(DaemonOrder order, const std::string& label,
                                 const Session& session) {
+    if (label != printable(label)) {
+        return fail(ErrorCode::bad_value, "a condition is UTF-8 text without control characters; "
+                                          "retype it");
+    }
     try {
         switch (order) {
         case DaemonOrder::status:

@@ -131,21 +131,21 @@ Result<FirstLook> look_at(const store::Store& store, const Session& session) {
 }
 
 std::string introduction(const DemoRequest& request, const std::filesystem::path& file,
-                         std::uint64_t reports, const Session& session) {
-    return session.style.warning(wrapped("SIMULATED DATA, made by the simulated hand, not by a "
-                                         "person.")) +
-           wrapped(fmt::format(
-               "The map room of a county archive tries an upright mouse against a thumb trackball: "
-               "{} at one desk, {} through the same pipeline as a live pointer's, "
+                         std::uint64_t reports) {
+    return wrapped(fmt::format(
+               "A demonstration. The map room of a county archive tries an upright mouse against a "
+               "thumb trackball: "
+               "{} at one desk, simulated, {} through the same pipeline as a live pointer's, "
                "stored in {}.",
                count_of(static_cast<std::uint64_t>(request.weeks), "week"),
                count_of(reports, "report"), file.string())) +
            "\n";
 }
 
-std::string how_to_go_live(const std::filesystem::path& file) {
+std::string how_to_go_live(const std::filesystem::path& file, Day last_monday) {
     return "\n" + wrapped("To look further at the demo:") +
-           fmt::format("  sagitta week --store {} --by direction\n", file.string()) +
+           fmt::format("  sagitta week --store {} --ending {} --by direction\n", file.string(),
+                       to_text(last_monday + date::days{6})) +
            fmt::format("  sagitta export --store {} --format csv\n\n", file.string()) +
            wrapped("To go live on your own pointers, install the package, then:") +
            "  systemctl --user enable --now sagittad   # starts recording, now and at each login\n"
@@ -191,9 +191,9 @@ Result<Output> run_demo(const DemoRequest& request, const Session& session) {
         json["reports"] = *reports;
         return Output{json.dump(2) + "\n"};
     }
-    return Output{introduction(request, file, *reports, session) +
+    return Output{introduction(request, file, *reports) +
                   week_text(*week, WeekDetail::summary, session) + "\n" +
-                  first_look_text(*look, session) + how_to_go_live(file)};
+                  first_look_text(*look, session) + how_to_go_live(file, last_monday)};
 }
 
 } // namespace sagitta::report

@@ -102,9 +102,11 @@ std::string devices_text(const DeviceList& list, const Session& session) {
             return device.cpi_source == CpiSource::assumed;
         });
     if (assumed) {
-        text += "\n" + wrapped("An assumed CPI makes hand travel and hand speed in mm a guess; set "
-                               "the pointer's own as cpi in the config. Measures in px do not "
-                               "depend on it.");
+        text +=
+            "\n" +
+            wrapped(
+                "An assumed CPI makes hand travel and hand speed in mm a guess; set the pointer's "
+                "own as cpi in the config. With a flat gain, measures in px do not depend on it.");
     }
     return text;
 }

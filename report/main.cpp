@@ -51,7 +51,7 @@ CLI::Validator date_validator() {
                 const auto day = report::parse_day(text);
                 return day ? std::string{} : day.error().message;
             },
-            "DATE"};
+            ""};
 }
 
 CLI::Validator time_validator() {
@@ -59,7 +59,13 @@ CLI::Validator time_validator() {
                 const auto time = report::parse_time(text, report::Calendar::in_utc());
                 return time ? std::string{} : time.error().message;
             },
-            "TIME"};
+            ""};
+}
+
+/// Turns one of the words into its value.
+template <class Value>
+CLI::Validator one_of(const std::map<std::string, Value>& words) {
+    return CLI::CheckedTransformer(words).description("");
 }
 
 void add_common(CLI::App& app, Common& common, bool with_json) {
@@ -84,11 +90,12 @@ void add_week(CLI::App& app, Common& common, Command& chosen) {
                     "sagitta week --ending 2026-11-29 --by direction");
     auto request = std::make_shared<report::WeekRequest>();
     command->add_option("--ending", request->ending, "a day of the ISO week (default: today)")
-        ->check(date_validator());
+        ->check(date_validator())
+        ->type_name("DATE");
     const std::map<std::string, report::WeekDetail> details = {
         {"direction", report::WeekDetail::by_direction}, {"hour", report::WeekDetail::by_hour}};
     command->add_option("--by", request->detail, "instead of the summary: by direction or by hour")
-        ->transform(CLI::CheckedTransformer(details))
+        ->transform(one_of(details))
         ->type_name("direction|hour");
     command->callback([&chosen, request] {
         chosen = {"week", [request](const Session& s) { return report::run_week(*request, s); }};
@@ -121,7 +128,8 @@ void add_replay(CLI::App& app, Common& common, Command& chosen) {
     command
         ->add_option("--start", request->start,
                      "when the recording began; needed with --store when its stamps are not UTC")
-        ->check(time_validator());
+        ->check(time_validator())
+        ->type_name("TIME");
     command->callback([&chosen, request] {
         if (request->start && request->recordings.size() > 1) {
             throw CLI::ValidationError("--start tells when one recording began; give one "
@@ -155,26 +163,33 @@ void add_record(CLI::App& app, Common& common, Command& chosen) {
 
 void add_export(CLI::App& app, Common& common, Command& chosen) {
     CLI::App* command = add_command(
-        app, common, "export",
-        "every row, for other programs\n\nTimes are ISO 8601 in UTC; numbers read back exactly. "
-        "--from and --to take a date (its first moment in your time zone) or a time such as "
-        "2026-11-23T09:30:00Z; --to itself is left out. The time of a movement is its press. "
-        "flags: 1 = CPI assumed, 2 = started in motion, 3 = both.",
+        app, common, "export", "every row, for other programs",
         "sagitta export --from 2026-11-23 --to 2026-11-30 --format csv > week48.csv", false);
+    command->footer(
+        "Times are ISO 8601 in UTC; numbers read back exactly. --from and --to take a date, which\n"
+        "is its first moment in your time zone, or a time such as 2026-11-23T09:30:00Z; --to "
+        "itself\n"
+        "is left out. The time of a movement is its press.\n"
+        "flags: 1 = CPI assumed, 2 = started in motion, 3 = both.\n\n" +
+        command->get_footer());
     auto request = std::make_shared<report::ExportRequest>();
     const std::map<std::string, report::ExportTable> tables = {
         {"movements", report::ExportTable::movements}, {"hours", report::ExportTable::hours}};
     const std::map<std::string, report::RowFormat> formats = {{"csv", report::RowFormat::csv},
                                                               {"jsonl", report::RowFormat::jsonl}};
     command->add_option("--table", request->table, "default: movements")
-        ->transform(CLI::CheckedTransformer(tables))
+        ->transform(one_of(tables))
         ->type_name("movements|hours");
     command->add_option("--format", request->format, "how to write rows")
         ->required()
-        ->transform(CLI::CheckedTransformer(formats))
+        ->transform(one_of(formats))
         ->type_name("csv|jsonl");
-    command->add_option("--from", request->from, "from here on")->check(time_validator());
-    command->add_option("--to", request->to, "up to here")->check(time_validator());
+    command->add_option("--from", request->from, "from here on")
+        ->check(time_validator())
+        ->type_name("TIME");
+    command->add_option("--to", request->to, "up to here")
+        ->check(time_validator())
+        ->type_name("TIME");
     command->add_option("--pointer", request->pointer, "only this pointer")->type_name("NAME");
     command->callback([&chosen, request] {
         chosen = {"export",
@@ -324,8 +339,11 @@ int parse_and_run(int argc, char** argv) {
         const auto chosen = app.get_subcommands();
         const std::string who =
             chosen.empty() ? "sagitta" : "sagitta " + chosen.front()->get_name();
-        return complain(who, std::string{error.what()} + "; see '" + who + " --help'",
-                        k_wrong_usage);
+        const bool no_command =
+            chosen.empty() && dynamic_cast<const CLI::RequiredError*>(&error) != nullptr;
+        const std::string what =
+            no_command ? "a command is needed, such as week or demo" : std::string{error.what()};
+        return complain(who, what + "; see '" + who + " --help'", k_wrong_usage);
     }
     return run(common, command, config);
 }

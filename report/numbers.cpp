@@ -27,7 +27,8 @@ std::string fixed(double value, int decimals, bool with_sign) {
 
 std::string interval_text(const estimator::Interval& interval, bool with_sign) {
     const double half = (interval.high - interval.low) / 2.0;
-    const int decimals = half > 0.0 ? decimals_for(half, 2) : decimals_for(interval.estimate, 3);
+    const int decimals =
+        std::min(half > 0.0 ? decimals_for(half, 2) : decimals_for(interval.estimate, 3), 3);
     return fixed(interval.estimate, decimals, with_sign) + " ± " + fixed(half, decimals, false);
 }
 

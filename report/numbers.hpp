@@ -15,11 +15,12 @@ namespace sagitta::report {
 [[nodiscard]] std::string grouped(std::uint64_t value);
 /// "1 day", "5 days"; "1 pointer", "2 pointers".
 [[nodiscard]] std::string count_of(std::uint64_t count, std::string_view noun);
-/// "3.15 ± 0.12": the half width has two significant digits and the estimate as many decimals.
+/// "3.15 ± 0.12": the half width has two significant digits, at most three decimals,
+/// and the estimate as many.
 [[nodiscard]] std::string with_interval(const estimator::Interval& interval);
 /// The same with a sign, "+0.05 ± 0.13": for differences.
 [[nodiscard]] std::string signed_interval(const estimator::Interval& interval);
-/// A mean without an interval, three significant digits.
+/// A mean without an interval: three significant digits, at most two decimals.
 [[nodiscard]] std::string plain(double value);
 /// "59 %", "0.4 %" below one; "0 %" for none.
 [[nodiscard]] std::string share(std::uint64_t part, std::uint64_t whole);

@@ -58,9 +58,10 @@ std::vector<Figure> figures(const HourSummary& totals) {
                     totals.error_centipx.quantile(0.5) / 100.0});
     list.push_back(
         {"path ratio, geometric mean", "path_ratio", "", std::exp(totals.log_path_ratio.mean)});
+    list.push_back({"direction changes per movement, mean", "direction_changes", "",
+                    totals.direction_changes.mean});
     list.push_back(
-        {"direction changes, mean", "direction_changes", "each", totals.direction_changes.mean});
-    list.push_back({"submovements, mean", "submovements", "each", totals.submovements.mean});
+        {"submovements per movement, mean", "submovements", "", totals.submovements.mean});
     list.push_back({"peak speed, mean", "peak_speed_mm_s", "mm/s", totals.peak_speed_mm_s.mean});
     return list;
 }
@@ -173,7 +174,7 @@ std::string replay_text(const ReplaySummary& summary, const Session& session) {
     std::string remarks;
     for (const ReplayedRecording& one : summary.recordings) {
         for (const std::string& remark : one.remarks) {
-            remarks += wrapped("  " + printable(one.file + ": " + remark));
+            remarks += wrapped(printable(one.file + ": " + remark));
         }
     }
     if (!remarks.empty()) {

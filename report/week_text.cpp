@@ -32,9 +32,9 @@ MeasureText describe(Measure measure, const WeekSummary& week) {
     case Measure::path_ratio:
         return {"path ratio", ""};
     case Measure::direction_changes:
-        return {"direction changes", "each"};
+        return {"direction changes per movement", ""};
     case Measure::submovements:
-        return {"submovements", "each"};
+        return {"submovements per movement", ""};
     }
     return {};
 }
@@ -49,11 +49,11 @@ std::string mean_text(const DayMean& mean) {
 const char* change_text(Change change) {
     switch (change) {
     case Change::higher:
-        return "higher than before";
+        return "higher";
     case Change::lower:
-        return "lower than before";
+        return "lower";
     case Change::none_clear:
-        return "no clear change";
+        return "none clear";
     case Change::unknown:
         return "";
     }
@@ -134,15 +134,25 @@ std::string series_heading(const SeriesWeek& series, const Session& session) {
     return session.style.heading(shortened(pointer_title(series.pointer) + label, 96)) + "\n";
 }
 
+/// A paragraph that stands under a heading as its table does.
+std::string under_heading(const std::string& paragraph) {
+    std::string text = "  " + wrapped(paragraph, 94);
+    for (std::size_t end = text.find('\n'); end + 1 < text.size(); end = text.find('\n', end + 1)) {
+        text.insert(end + 1, "  ");
+    }
+    return text;
+}
+
 /// Whether the days are enough, in words.
 std::string days_sentence(const SeriesWeek& series) {
     if (series.days_counted == 0) {
-        return wrapped(fmt::format("  {}; no day has the {} scored clicks that a day's value "
-                                   "needs, so nothing is said of how it went.",
-                                   count_of(series.clicks, "scored click"), k_min_day_clicks));
+        return under_heading(fmt::format("{}; no day has the {} scored clicks that a day's value "
+                                         "needs, so nothing is said of how it went.",
+                                         count_of(series.clicks, "scored click"),
+                                         k_min_day_clicks));
     }
     std::string sentence =
-        fmt::format("  {} on {}; {} with {} or more", count_of(series.clicks, "scored click"),
+        fmt::format("{} on {}; {} with {} or more", count_of(series.clicks, "scored click"),
                     count_of(series.days_with_clicks, "day"), count_of(series.days_counted, "day"),
                     k_min_day_clicks);
     if (series.days_counted_before > 0) {
@@ -150,6 +160,8 @@ std::string days_sentence(const SeriesWeek& series) {
     }
     if (series.days_counted < k_min_days) {
         sentence += fmt::format(": too few days for an interval, which needs {}", k_min_days);
+    } else if (series.days_counted_before == 0) {
+        sentence += "; there is nothing in the four weeks before to compare with";
     } else if (series.days_counted_before < k_min_days) {
         sentence +=
             fmt::format(": too few days before for a comparison, which needs {}", k_min_days);
@@ -159,21 +171,21 @@ std::string days_sentence(const SeriesWeek& series) {
                                 "width",
                                 count_of(series.days_other_width, "day"));
     }
-    return wrapped(sentence + ".");
+    return under_heading(sentence + ".");
 }
 
 std::string measure_table(const SeriesWeek& series, const WeekSummary& week) {
     Table table{{{"", Align::left},
+                 {"", Align::left},
                  {"this week", Align::right},
                  {series.days_counted_before > 0 ? "before" : "", Align::right},
-                 {"", Align::left},
                  {"difference", Align::right},
-                 {"", Align::left}}};
+                 {"change", Align::left}}};
     for (std::size_t m = 0; m < k_measures; ++m) {
         const DayComparison& comparison = series.measures[m];
         const MeasureText text = describe(static_cast<Measure>(m), week);
-        table.add({text.name, mean_text(comparison.now),
-                   series.days_counted_before > 0 ? mean_text(comparison.before) : "", text.unit,
+        table.add({text.name, text.unit, mean_text(comparison.now),
+                   series.days_counted_before > 0 ? mean_text(comparison.before) : "",
                    comparison.difference ? signed_interval(*comparison.difference) : "",
                    change_text(comparison.change())});
     }
@@ -304,6 +316,10 @@ std::string week_text(const WeekSummary& week, WeekDetail detail, const Session&
             break;
         case WeekDetail::by_direction:
             text += direction_table(series);
+            text += series.days_counted < k_min_days
+                        ? under_heading(
+                              fmt::format("Too few days for intervals, which need {}.", k_min_days))
+                        : "";
             break;
         case WeekDetail::by_hour:
             text += hour_table(series);

