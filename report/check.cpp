@@ -133,13 +133,15 @@ void judge_daemon(const CheckFacts& facts, Findings& findings) {
         findings.push_back({Severity::fine, "sagittad is running and recording", ""});
     }
     for (const std::string& why : facts.daemon_refused) {
-        findings.push_back({Severity::advice, "sagittad left a pointer out: " + printable(why),
+        findings.push_back({Severity::advice,
+                            fmt::format("sagittad left a pointer out: {}", printable(why)),
                             "journalctl --user -u sagittad"});
     }
     if (facts.daemon_write_failure) {
-        findings.push_back({Severity::trouble,
-                            "sagittad could not write: " + printable(*facts.daemon_write_failure),
-                            "journalctl --user -u sagittad"});
+        findings.push_back(
+            {Severity::trouble,
+             fmt::format("sagittad could not write: {}", printable(*facts.daemon_write_failure)),
+             "journalctl --user -u sagittad"});
     }
 }
 

@@ -73,7 +73,7 @@ std::string status_text(const Json& status, const Session& session) {
                                                ? "waiting for the session to become active"
                                                : state));
     const std::string condition = status.value("condition", "");
-    text += wrapped("  store: " + printable(status.value("store", "")));
+    text += wrapped(fmt::format("  store: {}", printable(status.value("store", ""))));
     text += wrapped("  condition: " + (condition.empty() ? "unlabelled" : printable(condition)));
     text += wrapped("  button presses since its start: " +
                     grouped(status.value("presses", std::uint64_t{0})));
@@ -93,8 +93,8 @@ std::string status_text(const Json& status, const Session& session) {
         text += session.style.warning(wrapped(printable(why.get<std::string>())));
     }
     if (status.contains("write_failure") && status["write_failure"].is_string()) {
-        text += session.style.warning(wrapped(
-            "The last write failed: " + printable(status["write_failure"].get<std::string>())));
+        text += session.style.warning(wrapped(fmt::format(
+            "The last write failed: {}", printable(status["write_failure"].get<std::string>()))));
     }
     return text;
 }
@@ -157,8 +157,9 @@ Result<Json> ask_daemon(const std::string& request) {
                                                "with 'systemctl --user restart sagittad'");
     }
     if (!json.value("ok", false)) {
-        return fail(ErrorCode::bad_value,
-                    "sagittad refused: " + printable(json.value("error", "no reason given")));
+        return fail(
+            ErrorCode::bad_value,
+            fmt::format("sagittad refused: {}", printable(json.value("error", "no reason given"))));
     }
     return json;
 }

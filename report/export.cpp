@@ -1,5 +1,6 @@
 #include "report/export.hpp"
 
+#include <fmt/format.h>
 #include <map>
 
 namespace sagitta::report {
@@ -224,7 +225,7 @@ std::vector<std::string> hour_columns() {
         columns.push_back(of + "_m2");
     }
     for (std::size_t s = 0; s < estimator::k_sectors; ++s) {
-        const std::string of = "sector_" + std::to_string(45 * s) + "_deg_";
+        const std::string of = fmt::format("sector_{}_deg_", 45 * s);
         for (const char* part : {"clicks", "offset_share_mean", "offset_share_m2",
                                  "initial_angle_deg_mean", "initial_angle_deg_m2"}) {
             columns.push_back(of + part);

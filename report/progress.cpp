@@ -3,6 +3,7 @@
 #include "report/table.hpp"
 
 #include <cstdio>
+#include <fmt/format.h>
 
 namespace sagitta::report {
 
@@ -28,7 +29,7 @@ void Progress::say(const std::string& text) {
     if (!m_shown) {
         return;
     }
-    const std::string line = "\r\033[K" + shortened(text, 78);
+    const std::string line = fmt::format("\r\033[K{}", shortened(text, 78));
     std::fputs(line.c_str(), stderr);
     std::fflush(stderr);
     m_written = true;

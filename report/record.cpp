@@ -102,8 +102,9 @@ Result<input::PointerNode> choose(const std::vector<input::PointerNode>& nodes,
                     fmt::format("no pointer is called '{}'; this machine has {}",
                                 printable(*wanted), names_of(nodes)));
     }
-    return fail(ErrorCode::bad_value,
-                "several pointers fit; name one with --pointer: " + names_of(fitting));
+    return fail(
+        ErrorCode::bad_value,
+        fmt::format("several pointers fit; name one with --pointer: {}", names_of(fitting)));
 }
 
 /// Copies reports until a stop signal, the end of the time, or the pointer's leaving.
@@ -174,7 +175,8 @@ Result<void> Recording::run(const RecordRequest& request, const Session& session
         }
         going = *turned;
         if (progress.due()) {
-            progress.say("recording: " + count_of(m_reports, "report") + "; Ctrl-C ends it");
+            progress.say(
+                fmt::format("recording: {}; Ctrl-C ends it", count_of(m_reports, "report")));
         }
     }
     return m_writer.close();

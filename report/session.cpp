@@ -3,6 +3,7 @@
 #include "report/table.hpp"
 
 #include <algorithm>
+#include <fmt/format.h>
 
 namespace sagitta::report {
 
@@ -54,14 +55,15 @@ Result<store::PointerId> find_pointer(const store::Store& store, const std::stri
         return similar.front()->id;
     }
     if (similar.size() > 1) {
-        return fail(ErrorCode::bad_value, "--pointer '" + printable(name) +
-                                              "' fits several pointers of the store; give the "
-                                              "whole name of one: " +
-                                              names);
+        return fail(ErrorCode::bad_value,
+                    fmt::format("--pointer '{}' fits several pointers of the store; give the whole "
+                                "name of one: {}",
+                                printable(name), names));
     }
     return fail(ErrorCode::not_found,
-                "the store " + store.file().string() + " has no pointer named '" + printable(name) +
-                    "'; it has " + (names.empty() ? std::string{"none yet"} : names));
+                fmt::format("the store {} has no pointer named '{}'; it has {}",
+                            store.file().string(), printable(name),
+                            names.empty() ? std::string{"none yet"} : names));
 }
 
 std::string pointer_title(const store::StoredPointer& pointer) {

@@ -129,14 +129,15 @@ std::string outcome_table(const WeekSummary& week) {
 }
 
 std::string series_heading(const SeriesWeek& series, const Session& session) {
-    const std::string label =
-        series.condition.empty() ? "" : ", condition " + printable(series.condition);
+    const std::string label = series.condition.empty()
+                                  ? std::string{}
+                                  : fmt::format(", condition {}", printable(series.condition));
     return session.style.heading(shortened(pointer_title(series.pointer) + label, 96)) + "\n";
 }
 
 /// A paragraph that stands under a heading as its table does.
 std::string under_heading(const std::string& paragraph) {
-    std::string text = "  " + wrapped(paragraph, 94);
+    std::string text = fmt::format("  {}", wrapped(paragraph, 94));
     for (std::size_t end = text.find('\n'); end + 1 < text.size(); end = text.find('\n', end + 1)) {
         text.insert(end + 1, "  ");
     }
