@@ -3,6 +3,7 @@
 // It prints the node of its device, then reads the names of recordings from standard input, one a
 // line. It plays each and prints "played N packets, at most X us late". The device lives until
 // the input ends.
+#include <algorithm>
 #include <array>
 #include <cerrno>
 #include <cstdint>
@@ -23,6 +24,8 @@ namespace {
 
 constexpr std::int64_t k_ns_per_us = 1000;
 constexpr std::int64_t k_ns_per_s = 1'000'000'000;
+/// A pointer never sends faster than its rate, so packets that are late catch up gradually.
+constexpr std::int64_t k_min_gap_ns = 900'000;
 constexpr std::int64_t k_lead_ns = 300'000'000; ///< still time before the first packet
 
 std::int64_t now_ns() {
@@ -76,13 +79,15 @@ Uinput create_pointer(const char* name) {
 bool play(const libevdev_uinput* pointer, const std::vector<input_event>& events) {
     const std::int64_t shift_ns = now_ns() + k_lead_ns - stamp_ns(events.front());
     std::int64_t latest_ns = 0;
+    std::int64_t sent_ns = 0;
     std::size_t packets = 0;
     bool at_packet_start = true;
     for (const input_event& event : events) {
         if (at_packet_start) {
             const std::int64_t due_ns = stamp_ns(event) + shift_ns;
-            sleep_until(due_ns);
-            latest_ns = std::max(latest_ns, now_ns() - due_ns);
+            sleep_until(std::max(due_ns, sent_ns + k_min_gap_ns));
+            sent_ns = now_ns();
+            latest_ns = std::max(latest_ns, sent_ns - due_ns);
         }
         if (libevdev_uinput_write_event(pointer, event.type, event.code, event.value) < 0) {
             return false;
