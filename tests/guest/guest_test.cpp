@@ -45,9 +45,10 @@ struct Attempt {
     std::string to_utc;
 };
 
-/// A stall of the emulator longer than this may cut a movement in two (a rest is 200 ms).
-constexpr std::int64_t k_stall_us = 100'000;
-constexpr int k_attempts = 3;
+/// A stall of the emulator longer than this changes a movement's speed enough to move its start,
+/// and from 200 ms on (a rest) cuts it in two.
+constexpr std::int64_t k_stall_us = 40'000;
+constexpr int k_attempts = 4;
 
 class Test {
 public:
