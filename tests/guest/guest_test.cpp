@@ -147,7 +147,7 @@ Attempt Test::send_evenly(const std::string& name, const std::string& node,
         std::ofstream{attempt.kernel_log, std::ios::binary} << log;
         attempt.kernel = packets_of(log);
         const std::int64_t stall = stall_us(planned(recording), attempt.kernel);
-        std::printf("sent to the %s: %zu packets, at most %.1f ms early or late\n", name.c_str(),
+        std::printf("sent to the %s: %zu packets, longest stall %.1f ms\n", name.c_str(),
                     attempt.kernel.size(), static_cast<double>(stall) / 1000.0);
         if (stall <= k_stall_us || i == k_attempts) {
             return attempt;

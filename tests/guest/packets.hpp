@@ -39,8 +39,8 @@ struct Delay {
 [[nodiscard]] std::int64_t jitter_us(const std::vector<Delay>& delays, std::int64_t from_us,
                                      std::int64_t to_us);
 
-/// The same over all that was sent; the largest number there is when the kernel's packets are not
-/// those planned.
+/// The longest stall: the largest change of delay from one packet to the next, us; the largest
+/// number there is when the kernel's packets are not those planned.
 [[nodiscard]] std::int64_t stall_us(const std::vector<Packet>& planned,
                                     const std::vector<Packet>& seen);
 
