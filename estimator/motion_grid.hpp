@@ -13,6 +13,7 @@
 #pragma once
 
 #include "estimator/path.hpp"
+#include "estimator/report.hpp"
 #include "estimator/units.hpp"
 
 #include <array>
@@ -32,14 +33,15 @@ constexpr Micros k_longest_interval{8'000};
 
 class MotionGrid {
 public:
-    /// @param span  longest run that fits, > 0
+    /// @param span  longest run that fits, > 0, up to 5 minutes
     explicit MotionGrid(Micros span);
 
     /// Ends the run. The next add() begins a new one at the origin.
     void clear() noexcept { m_reports = 0; }
-    /// Adds one motion report. @param time  not before the last one's
-    /// @return false when the run no longer fits; the report is then not taken
-    bool add(PointerTime time, std::int32_t dx, std::int32_t dy) noexcept;
+    /// Adds motion reports. @param reports  their stamps are in order, and not before the last
+    /// one's
+    /// @return how many were taken; fewer than all when the run no longer fits
+    std::size_t add(std::span<const Report> reports) noexcept;
 
     [[nodiscard]] bool empty() const noexcept { return m_reports == 0; }
     [[nodiscard]] std::uint32_t reports() const noexcept { return m_reports; }
@@ -57,72 +59,64 @@ public:
     [[nodiscard]] Samples samples() noexcept;
 
 private:
-    /// One axis. Times are us since the grid's origin.
+    /// us since the grid's origin. A run is bounded, so 32 bits hold it.
+    using Offset = std::int32_t;
+
     class Axis {
     public:
         void reserve(std::size_t samples);
         void begin(std::int64_t origin_moved) noexcept;
-        void step(std::int64_t now, std::int32_t delta) noexcept;
+        void step(Offset now, std::int32_t delta) noexcept;
         std::span<const double> finish(std::size_t size) noexcept;
 
     private:
-        void change(std::int64_t now, std::int32_t delta) noexcept;
-        void settle(std::int64_t time) noexcept;
-        void depart(std::int64_t time) noexcept;
-        void ramp(std::int64_t from, std::int64_t to, double position) noexcept;
-        void fill(std::int64_t from, std::int64_t to, double position) noexcept;
+        void change_after_still(Offset now, std::int32_t delta) noexcept;
+        void settle(Offset time) noexcept;
+        void depart(Offset time) noexcept;
+        void ramp(Offset from, Offset to, double position) noexcept;
+        void fill(Offset from, Offset to, double position) noexcept;
 
         std::vector<double> m_samples; ///< counts; valid below m_filled
         std::size_t m_filled = 0;
-        std::int64_t m_next_sample = 0; ///< time of sample m_filled
-        std::int64_t m_counts = 0;      ///< cumulative
-        double m_position = 0.0;        ///< likeliest one at the last change
-        double m_ramped = 0.0;          ///< position at the end of the last ramp
-        std::int64_t m_last_change = 0; ///< may lie in the run before
-        std::int64_t m_step_time = 0;   ///< that the last step took
+        Offset m_next_sample = 0; ///< time of sample m_filled
+        Offset m_last_change = 0; ///< may lie in the run before
+        Offset m_step_time = 0;   ///< that the last step took
         /// The last change ended a still stretch: its ramp waits for the next change, and may
         /// reach this far back.
         bool m_waits = false;
-        std::int64_t m_room = 0;
+        Offset m_room = 0;
+        double m_counts = 0.0;   ///< cumulative, whole
+        double m_position = 0.0; ///< likeliest one at the last change
+        double m_ramped = 0.0;   ///< position at the end of the last ramp
     };
 
     struct Pending {
-        std::int64_t time;
+        Offset time;
         std::int32_t dx;
         std::int32_t dy;
     };
-    static constexpr std::size_t k_window = 7;
+    static constexpr std::uint32_t k_window = 7;
+    static constexpr std::uint32_t k_ring = 8; ///< a power of two above k_window
 
     void begin(PointerTime time) noexcept;
-    void release_up_to(std::size_t end) noexcept;
-    void release(std::size_t place) noexcept;
+    void add_one(Offset now, std::int32_t dx, std::int32_t dy) noexcept;
+    void release(std::uint32_t place) noexcept;
+    void pass_on(Offset mean, const Pending& report) noexcept;
+    [[nodiscard]] Pending& pending(std::uint32_t place) noexcept { return m_ring[place % k_ring]; }
 
     std::int64_t m_span_us;
     PointerTime m_origin{};
     PointerTime m_first{};
     PointerTime m_last{};
     std::uint32_t m_reports = 0;
-    /// The last reports, oldest first; those below m_released have gone to the axes.
-    std::array<Pending, k_window> m_window{};
-    std::size_t m_pending = 0;
-    std::size_t m_released = 0;
-    std::int64_t m_last_release = 0;
+    /// The last reports by their place in the run; those below m_released have gone to the axes.
+    std::array<Pending, k_ring> m_ring{};
+    std::uint32_t m_taken = 0;
+    std::uint32_t m_released = 0;
+    Offset m_window_sum = 0; ///< of the last k_window stamps
+    Offset m_last_release = 0;
     Axis m_x;
     Axis m_y;
 };
-
-inline void MotionGrid::Axis::step(std::int64_t now, std::int32_t delta) noexcept {
-    if (delta != 0) {
-        change(now, delta);
-    }
-}
-
-/// Still until `from`, then straight to `position` at `to`.
-inline void MotionGrid::Axis::ramp(std::int64_t from, std::int64_t to, double position) noexcept {
-    if (m_next_sample <= to) {
-        fill(from, to, position);
-    }
-    m_ramped = position;
-}
 
 } // namespace sagitta::estimator

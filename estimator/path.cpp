@@ -69,9 +69,14 @@ const Path& PathBuilder::build(std::span<const double> x, std::span<const double
     differentiate(calibration);
     find_ends(origin - static_cast<Micros::rep>(k_pad_before) * k_sample_interval);
     project(x.back(), y.back(), calibration);
-    m_path.length_px = polyline(m_path.x_px, m_path.y_px, m_path.first, m_path.last, 1.0, 1.0);
     m_path.length_mm = polyline(m_x, m_y, m_path.first, m_path.last, calibration.mm_per_count_x,
                                 calibration.mm_per_count_y);
+    // With a flat gain the two planes differ by one factor on both axes.
+    m_path.length_px =
+        calibration.gain.is_flat()
+            ? m_path.length_mm * calibration.px_per_count_x / calibration.mm_per_count_x *
+                  calibration.gain.factor_at(MillimetresPerSecond::zero())
+            : polyline(m_path.x_px, m_path.y_px, m_path.first, m_path.last, 1.0, 1.0);
     return m_path;
 }
 

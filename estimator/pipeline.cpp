@@ -57,6 +57,32 @@ struct PointerRun {
     Displacement since_press{0.0, 0.0};
 };
 
+bool moves(const Report& report) {
+    return report.dx != 0 || report.dy != 0;
+}
+
+bool is_only_motion(const Report& report) {
+    return moves(report) &&
+           (report.pressed | report.released | report.wheel_120ths | report.after_loss) == 0;
+}
+
+/// How many reports from the first on are one pointer's motion without a rest between. The last of
+/// them may also hold a button edge or a wheel step.
+std::size_t plain_motion(std::span<const Report> reports, Micros rest) {
+    std::size_t count = 1;
+    while (count < reports.size() && is_only_motion(reports[count - 1])) {
+        const Report& before = reports[count - 1];
+        const Report& next = reports[count];
+        const Micros gap = next.time - before.time;
+        if (next.pointer != before.pointer || next.after_loss || !moves(next) || gap >= rest ||
+            gap < Micros::zero()) {
+            break;
+        }
+        ++count;
+    }
+    return count;
+}
+
 FlagSet flag(Flag value) {
     return static_cast<FlagSet>(value);
 }
@@ -73,8 +99,9 @@ struct Pipeline::State {
     PathBuilder builder;
     Scorer scorer;
 
-    void take(const Report& report);
-    void take_motion(PointerIndex pointer, PointerRun& run, const Report& report);
+    std::size_t take(std::span<const Report> reports);
+    void begin_motion(PointerIndex pointer, PointerRun& run, PointerTime time);
+    void take_motion(PointerRun& run, std::span<const Report> reports);
     void take_buttons(PointerIndex pointer, PointerRun& run, const Report& report);
     void press(PointerIndex pointer, PointerRun& run, PointerTime time, Button button);
     void release(PointerIndex pointer, PointerRun& run, PointerTime time, Button button);
@@ -103,8 +130,8 @@ void Pipeline::set_pointer(PointerIndex pointer, const Calibration& calibration)
 }
 
 void Pipeline::process(std::span<const Report> reports) {
-    for (const Report& report : reports) {
-        m_state->take(report);
+    while (!reports.empty()) {
+        reports = reports.subspan(m_state->take(reports));
     }
 }
 
@@ -141,53 +168,69 @@ void Pipeline::set_rules(const Rules& rules) {
     }
 }
 
-void Pipeline::State::take(const Report& report) {
-    const auto index = static_cast<std::size_t>(report.pointer);
-    PointerRun* const run = runs[index].get();
+/// Takes the first report, and with it those that only go on with its motion.
+/// @return how many were taken, >= 1
+std::size_t Pipeline::State::take(std::span<const Report> reports) {
+    const Report& report = reports.front();
+    PointerRun* const run = runs[static_cast<std::size_t>(report.pointer)].get();
     if (run == nullptr) {
-        return;
+        return 1;
     }
-    if (report.after_loss || report.time < run->last_motion) [[unlikely]] {
+    if (report.after_loss || report.time < run->last_motion) {
         break_off(report.pointer, *run, Outcome::lost_reports);
         run->held = 0;
         run->lost = true;
         run->last_motion = report.time;
+        run->last_press = k_never;
     }
-    if (report.dx != 0 || report.dy != 0) [[likely]] {
-        take_motion(report.pointer, *run, report);
+    std::size_t taken = 1;
+    if (moves(report)) {
+        begin_motion(report.pointer, *run, report.time);
+        taken = plain_motion(reports, rules.segmentation.rest);
+        take_motion(*run, reports.first(taken));
     }
-    if (report.wheel_120ths != 0) [[unlikely]] {
-        break_off(report.pointer, *run, Outcome::no_press);
-        sink->on_wheel(report.pointer, report.time, report.wheel_120ths);
+    // Only the last one taken may hold more than motion.
+    const Report& last = reports[taken - 1];
+    if (last.wheel_120ths != 0) {
+        break_off(last.pointer, *run, Outcome::no_press);
+        sink->on_wheel(last.pointer, last.time, last.wheel_120ths);
     }
-    if ((report.pressed | report.released) != 0) [[unlikely]] {
-        take_buttons(report.pointer, *run, report);
+    if ((last.pressed | last.released) != 0) {
+        take_buttons(last.pointer, *run, last);
     }
+    return taken;
 }
 
-inline void Pipeline::State::take_motion(PointerIndex pointer, PointerRun& run,
-                                         const Report& report) {
-    if (mover != static_cast<std::size_t>(pointer)) [[unlikely]] {
+/// Breaks that come with a motion report: another pointer's run, or a rest before.
+void Pipeline::State::begin_motion(PointerIndex pointer, PointerRun& run, PointerTime time) {
+    if (mover != static_cast<std::size_t>(pointer)) {
         if (runs[mover]) {
             break_off(static_cast<PointerIndex>(mover), *runs[mover], Outcome::no_press);
         }
         mover = static_cast<std::size_t>(pointer);
     }
-    const bool rested = report.time - run.last_motion >= rules.segmentation.rest &&
-                        report.time - run.last_motion >= rules.segmentation.rest + run.unseen();
-    if (rested) [[unlikely]] {
+    const Micros gap = time - run.last_motion;
+    const bool rested =
+        gap >= rules.segmentation.rest && gap >= rules.segmentation.rest + run.unseen();
+    if (rested) {
         break_off(pointer, run, Outcome::no_press);
         run.lost = false;
     }
-    if (run.grid.empty()) [[unlikely]] {
+    if (run.grid.empty()) {
         run.started_in_motion = !rested;
     }
-    run.motion_before = run.last_motion;
-    run.last_counts = std::max(std::abs(report.dx), std::abs(report.dy));
-    run.last_motion = report.time;
-    if (!run.grid.add(report.time, report.dx, report.dy)) [[unlikely]] {
-        outgrow(run);
-        run.grid.add(report.time, report.dx, report.dy);
+}
+
+void Pipeline::State::take_motion(PointerRun& run, std::span<const Report> reports) {
+    const Report& last = reports.back();
+    run.motion_before = reports.size() > 1 ? reports[reports.size() - 2].time : run.last_motion;
+    run.last_counts = std::max(std::abs(last.dx), std::abs(last.dy));
+    run.last_motion = last.time;
+    while (!reports.empty()) {
+        reports = reports.subspan(run.grid.add(reports));
+        if (!reports.empty()) {
+            outgrow(run);
+        }
     }
 }
 

@@ -14,6 +14,9 @@ namespace {
 
 constexpr double k_degrees_per_radian = 180.0 / std::numbers::pi;
 
+// The path is filtered to 10 Hz, so every fourth sample, 50 a second, tells its spectrum as well.
+constexpr std::size_t k_thinning = 4;
+
 double interpolate(std::span<const double> values, double place) {
     const double last = static_cast<double>(values.size() - 1);
     const double inside = std::clamp(place, 0.0, last);
@@ -88,7 +91,11 @@ Scores Scorer::score(const Path& path, const ScoreRules& rules) {
                     k_degrees_per_radian);
 
     const std::span<const double> speed{path.speed_mm_s.data() + first, size};
-    scores.smoothness_sparc = spectral_arc_length(speed, k_sample_rate_hz);
+    m_thinned.clear();
+    for (std::size_t i = 0; i < size; i += k_thinning) {
+        m_thinned.push_back(speed[i]);
+    }
+    scores.smoothness_sparc = spectral_arc_length(m_thinned, k_sample_rate_hz / k_thinning);
     scores.smoothness_ldlj = log_dimensionless_jerk(speed);
     return scores;
 }

@@ -41,6 +41,7 @@ private:
     std::vector<double> m_along;          ///< px
     std::vector<double> m_across;         ///< px, + = left
     std::vector<double> m_along_velocity; ///< mm/s
+    std::vector<double> m_thinned;        ///< mm/s
 };
 
 } // namespace sagitta::estimator

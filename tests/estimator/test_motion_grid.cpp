@@ -18,6 +18,14 @@ PointerTime at(Micros time) {
     return PointerTime{time};
 }
 
+bool add(MotionGrid& grid, Micros time, std::int32_t dx, std::int32_t dy) {
+    Report report;
+    report.time = at(time);
+    report.dx = dx;
+    report.dy = dy;
+    return grid.add({&report, 1}) == 1;
+}
+
 /// Sample of x at a time, by the grid's own steps.
 double x_at(const MotionGrid& grid, const MotionGrid::Samples& samples, Micros time) {
     const auto place = (at(time) - grid.origin()) / k_sample_interval;
@@ -38,7 +46,7 @@ struct Count final : MovementSink {
 TEST_CASE("regular stamps are left as they are: steady motion gives a straight line") {
     MotionGrid grid{4s};
     for (int i = 1; i <= 100; ++i) {
-        REQUIRE(grid.add(at(1s + i * 8ms), 3, 0));
+        REQUIRE(add(grid, 1s + i * 8ms, 3, 0));
     }
     const MotionGrid::Samples samples = grid.samples();
     // 3 counts in 8 ms; position at a report is that of its count.
@@ -54,7 +62,7 @@ TEST_CASE("jittered stamps of a steady motion come out nearly straight") {
     for (int i = 1; i <= 100; ++i) {
         noise = noise * 1664525U + 1013904223U; // any fixed sequence does
         const Micros late{static_cast<int>((noise >> 16U) % 8000U)};
-        REQUIRE(grid.add(at(1s + i * 8ms + late), 8, 0));
+        REQUIRE(add(grid, 1s + i * 8ms + late, 8, 0));
     }
     const MotionGrid::Samples samples = grid.samples();
     double worst = 0.0;
@@ -68,7 +76,7 @@ TEST_CASE("jittered stamps of a steady motion come out nearly straight") {
 TEST_CASE("a hand that dithers over the edge of a step stands still on it") {
     MotionGrid grid{4s};
     for (int i = 0; i < 20; ++i) {
-        REQUIRE(grid.add(at(1s + i * 20ms), i % 2 == 0 ? 1 : -1, 0));
+        REQUIRE(add(grid, 1s + i * 20ms, i % 2 == 0 ? 1 : -1, 0));
     }
     const MotionGrid::Samples samples = grid.samples();
     for (int i = 1; i < 18; ++i) {
@@ -79,9 +87,9 @@ TEST_CASE("a hand that dithers over the edge of a step stands still on it") {
 
 TEST_CASE("the first count's ramp is as long as the step behind it, and no longer than 80 ms") {
     MotionGrid grid{4s};
-    REQUIRE(grid.add(at(1s), 1, 0));
-    REQUIRE(grid.add(at(1s + 30ms), 1, 0));
-    REQUIRE(grid.add(at(1s + 530ms), 1, 0));
+    REQUIRE(add(grid, 1s, 1, 0));
+    REQUIRE(add(grid, 1s + 30ms, 1, 0));
+    REQUIRE(add(grid, 1s + 530ms, 1, 0));
     const MotionGrid::Samples samples = grid.samples();
     CHECK(x_at(grid, samples, 1s - 35ms) == 0.0);
     CHECK(x_at(grid, samples, 1s - 15ms) == doctest::Approx(0.25));
@@ -93,9 +101,9 @@ TEST_CASE("the first count's ramp is as long as the step behind it, and no longe
 
 TEST_CASE("a run that no longer fits is refused, and the grid keeps what it had") {
     MotionGrid grid{1s};
-    REQUIRE(grid.add(at(10s), 1, 1));
-    REQUIRE(grid.add(at(10s + 900ms), 1, 1));
-    CHECK_FALSE(grid.add(at(10s + 1100ms), 1, 1));
+    REQUIRE(add(grid, 10s, 1, 1));
+    REQUIRE(add(grid, 10s + 900ms, 1, 1));
+    CHECK_FALSE(add(grid, 10s + 1100ms, 1, 1));
     CHECK(grid.reports() == 2);
     CHECK(grid.samples().x.back() == 2.0);
 }
