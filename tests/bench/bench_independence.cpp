@@ -379,8 +379,8 @@ bool breaks(const Row& row, double promise) {
 }
 
 bool print_summary(const std::vector<std::vector<Row>>& table) {
-    std::printf("%-17s %13s %-13s %13s %-13s %6s %8s %8s  %s\n", "measure", "800+ CPI", "at",
-                "400 CPI", "at", "60/s", "median", "95th", "naive, worst");
+    std::printf("%-16s %12s  %-14s %12s  %-14s %5s %7s %7s  %s\n", "measure", "800+ CPI",
+                "worst at", "400 CPI", "worst at", "60/s", "median", "95th", "naive");
     bool kept = true;
     for (std::size_t m = 0; m < table.size(); ++m) {
         const Measure& measure = measures()[m];
@@ -405,10 +405,10 @@ bool print_summary(const std::vector<std::vector<Row>>& table) {
         const bool broken = measure.promise > 0.0 &&
                             (breaks(high, measure.promise) || breaks(low, measure.promise_slow));
         kept = kept && !broken;
-        std::printf("%-17s %6.3f+-%.3f %-13s %6.3f+-%.3f %-13s %6.3f %7.2f%% %7.2f%%", measure.name,
-                    high.ratio, high.ratio_se, high.setup.c_str(), low.ratio, low.ratio_se,
-                    low.setup.c_str(), table[m].back().ratio, 100.0 * median / counted,
-                    100.0 * p95 / counted);
+        std::printf("%-16s %5.3f +-%.3f  %-14s %5.3f +-%.3f  %-14s %5.3f %6.2f%% %6.2f%%",
+                    measure.name, high.ratio, high.ratio_se, high.setup.c_str(), low.ratio,
+                    low.ratio_se, low.setup.c_str(), table[m].back().ratio,
+                    100.0 * median / counted, 100.0 * p95 / counted);
         if (plain.naive_ratio > 0.0 && m < 15 && std::string_view{"time to peak"} != measure.name) {
             std::printf("  %7.3f", plain.naive_ratio);
         }
