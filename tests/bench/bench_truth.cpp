@@ -1,10 +1,11 @@
-// bench_truth [PEOPLE [MINUTES_A_HALF_DAY]]
+// bench_truth [PEOPLE [MINUTES_A_HALF_DAY]] [--no-slow]
 //
 // How well each measure recovers what it claims. Seeded people, whose way of pointing is known, do
 // days of everyday work through the real pipeline. The first table holds each measure against what
 // is known of the people; the second compares two devices whose difference is known, while the
-// work changes between them or the reference width does. Exit 1 when the truths cannot be found in
-// the scored movements, or when the headline's interval covers too little.
+// work changes between them or the reference width does. --no-slow: without presses that take long
+// and without the limit on movement time, to see what these do. Exit 1 when the truths cannot be
+// found in the scored movements, or when the headline's interval covers too little.
 #include "estimator/interval.hpp"
 #include "truth_measures.hpp"
 #include "truth_statistics.hpp"
@@ -16,6 +17,7 @@
 #include <cstdlib>
 #include <functional>
 #include <string>
+#include <string_view>
 
 namespace {
 
@@ -37,6 +39,7 @@ constexpr hand::Form k_other_effect{0.9, 1.25, 1.0};
 struct Scale {
     int people = 96;
     Micros half_day = std::chrono::minutes{20};
+    bool slow_presses = true;
 };
 
 /// Clicks over the whole run.
@@ -77,6 +80,7 @@ Studied make_studied(std::uint64_t seed, const Scale& scale, Counts& counts) {
     plan.pointer = make_pointer(1000.0, 125.0);
     plan.days = static_cast<int>(k_parts * k_part_days);
     plan.half_day = scale.half_day;
+    plan.slow_presses = scale.slow_presses;
     const std::vector<Sums> days = counts.take(work(plan));
     studied.parts.resize(k_parts);
     for (std::size_t i = 0; i < days.size(); ++i) {
@@ -318,6 +322,7 @@ Compared make_compared(std::uint64_t seed, const Scale& scale, Counts& counts) {
     plan.other_effect = k_other_effect;
     plan.days = k_compared_days;
     plan.half_day = scale.half_day;
+    plan.slow_presses = scale.slow_presses;
     Compared compared;
     compared.own = counts.take(work(plan));
     for (const Arm& arm : arms()) {
@@ -422,12 +427,16 @@ void print_devices(const std::vector<Compared>& people) {
 
 int main(int argc, char** argv) {
     Scale scale;
+    if (argc > 1 && std::string_view{argv[argc - 1]} == "--no-slow") {
+        scale.slow_presses = false;
+        --argc;
+    }
     scale.people = argc > 1 ? std::atoi(argv[1]) : scale.people;
     scale.half_day = argc > 2 ? std::chrono::minutes{std::atoi(argv[2])} : scale.half_day;
     if (scale.people < 6 || scale.half_day < std::chrono::minutes{15} ||
         scale.half_day > std::chrono::hours{4}) {
-        std::fprintf(stderr, "usage: bench_truth [PEOPLE [MINUTES_A_HALF_DAY]], 6 people or more, "
-                             "15 to 240 minutes\n");
+        std::fprintf(stderr, "usage: bench_truth [PEOPLE [MINUTES_A_HALF_DAY]] [--no-slow], "
+                             "6 people or more, 15 to 240 minutes\n");
         return 2;
     }
     Counts counts;

@@ -67,6 +67,14 @@ private:
     std::deque<hand::AimedTruth> m_truths;
 };
 
+Rules rules_for(const WorkPlan& plan) {
+    Rules rules;
+    if (!plan.slow_presses) {
+        rules.segmentation.max_movement_time = std::chrono::seconds{30};
+    }
+    return rules;
+}
+
 hand::DeskPlan desk_plan(const WorkPlan& plan) {
     hand::DeskPlan desk;
     desk.seed = plan.seed;
@@ -77,6 +85,7 @@ hand::DeskPlan desk_plan(const WorkPlan& plan) {
     desk.morning_end = desk.morning_start + plan.half_day;
     desk.afternoon_end = desk.afternoon_start + plan.half_day;
     desk.targets.width = plan.target_width;
+    desk.activities.slow_press *= plan.slow_presses ? 1.0 : 0.0;
     desk.keep_truths = true;
     return desk;
 }
@@ -101,7 +110,7 @@ Worked work(const WorkPlan& plan) {
         std::exit(1);
     }
     DayCollector collector{plan, (*desk)->begin()};
-    Pipeline pipeline{Rules{}, collector};
+    Pipeline pipeline{rules_for(plan), collector};
     pipeline.set_pointer(PointerIndex{},
                          calibrate((*desk)->pointers()[0], std::nullopt, CpiSource::config, *gain));
     ReportBatch batch;

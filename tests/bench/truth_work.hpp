@@ -16,6 +16,9 @@ struct WorkPlan {
     estimator::Pixels target_width = estimator::Pixels::of(34.0); ///< median
     int days = 5;
     estimator::Micros half_day = std::chrono::minutes{20};
+    /// Everyday work holds presses that take long, and the rules leave out what takes over 4 s.
+    /// false: neither is so.
+    bool slow_presses = true;
 };
 
 /// A pointer by its electronics, with one px to 1/1000 inch of the hand whatever its CPI.
