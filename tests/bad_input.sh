@@ -2,7 +2,7 @@
 # Gives the programs what they cannot use. Each time they must end with the right exit code and
 # one clear sentence on standard error, and leave every file as it was.
 # Usage: bad_input.sh SAGITTA SAGITTAD SAMPLE_EVEMU_RECORDING
-set -u
+set -euo pipefail
 export LC_ALL=C.UTF-8 TZ=UTC
 sagitta=$1 sagittad=$2 sample=$3
 work=$(mktemp -d "${TMPDIR:-/tmp}/sagitta-bad-input-XXXXXX")
@@ -49,7 +49,7 @@ accepted() {
     local words=$1
     shift
     run 0 "$@"
-    cat ../log/out ../log/err | grep -qiF -- "$words" || fail "says nothing of \"$words\": $*"
+    grep -qiF -- "$words" ../log/out ../log/err || fail "says nothing of \"$words\": $*"
 }
 
 # recording CLICKS [FIRST_SECOND]: evemu text of moves to the right, each ended by a click.
@@ -135,7 +135,7 @@ while IFS='|' read -r file words; do
     refused 1 "$words" "$sagitta" week --store "$file"
     refused 1 "$words" "$sagitta" export --store "$file" --format csv
     refused 1 "$words" "$sagitta" export --store "$file" --table hours --format jsonl
-    [[ $file == text || $file == nowhere.db ]] && continue
+    [[ $file != text && $file != nowhere.db ]] || continue
     refused 1 "$words" "$sagitta" replay --store "$file" good
     refused 1 "$words" "$sagittad" --store "$file"
 done <<'END'
@@ -193,7 +193,7 @@ full_disk() {
     cp good.db disk/s.db && recording 4000 1767800000 >much
     run 1 "$sagitta" replay --store disk/s.db much
     grep -qF space ../log/err || fail "says nothing of space: disk/s.db"
-    dd if=/dev/zero of=disk/filler bs=1k status=none 2>../log/err
+    dd if=/dev/zero of=disk/filler bs=1k status=none 2>../log/err || true # until full
     for store in disk/s.db disk/new.db; do
         run 1 "$sagitta" replay --store "$store" more
         grep -qF space ../log/err || fail "says nothing of space: $store"

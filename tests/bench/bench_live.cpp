@@ -4,6 +4,7 @@
 // daemon's live recording (event loop, reading, movements, store) beside that of a plain blocking
 // read loop on the same packets.
 #include "daemon/live_pointers.hpp"
+#include "daemon/logging.hpp"
 #include "daemon/recording_session.hpp"
 #include "estimator/hand/desk.hpp"
 #include "input/event_queue.hpp"
@@ -19,7 +20,6 @@
 #include <filesystem>
 #include <fstream>
 #include <linux/input.h>
-#include <spdlog/sinks/null_sink.h>
 #include <sys/mman.h>
 #include <sys/resource.h>
 #include <sys/wait.h>
@@ -203,10 +203,10 @@ Reading record_live(int fd, const fs::path& store_file, int seconds) {
     boost::asio::io_context loop{1};
     PipeDevices devices{fd};
     daemon::SystemClocks clocks;
-    spdlog::logger log{"bench", std::make_shared<spdlog::sinks::null_sink_st>()};
+    const auto log = daemon::make_logger("error", false);
     std::function<void()> turn;
     daemon::LivePointers pointers{loop, devices, [&turn] { turn(); }};
-    daemon::RecordingSession session{{}, {pointers, clocks, opened->store, log}, "bench"};
+    daemon::RecordingSession session{{}, {pointers, clocks, opened->store, *log}, "bench"};
     turn = [&session] { session.turn(); };
     session.start(std::nullopt);
     boost::asio::steady_timer end{loop, std::chrono::seconds{seconds}};

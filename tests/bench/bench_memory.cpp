@@ -3,6 +3,7 @@
 // Memory of a recording: pipeline, recorder and store, driven as by the daemon through simulated
 // weeks of desk work in this process, whose resident memory is read as it goes. Then the real
 // sagittad without a pointer: its memory, and how often it wakes.
+#include "daemon/logging.hpp"
 #include "daemon/recording_session.hpp"
 #include "estimator/hand/desk.hpp"
 #include "tests/bench/child.hpp"
@@ -14,7 +15,6 @@
 #include <fcntl.h>
 #include <filesystem>
 #include <fstream>
-#include <spdlog/sinks/null_sink.h>
 #include <sys/wait.h>
 #include <thread>
 #include <unistd.h>
@@ -101,8 +101,8 @@ void record_weeks(const fs::path& folder, int weeks) {
     }
     DeskFeed feed{**desk};
     DeskClocks clocks{**desk};
-    spdlog::logger log{"bench", std::make_shared<spdlog::sinks::null_sink_st>()};
-    daemon::RecordingSession session{{}, {feed, clocks, opened->store, log}, "bench"};
+    const auto log = daemon::make_logger("error", false);
+    daemon::RecordingSession session{{}, {feed, clocks, opened->store, *log}, "bench"};
     session.start(std::nullopt);
     session.turn(); // meets the pointers
 
