@@ -144,6 +144,7 @@ double bias_of(const Measure& measure, const std::vector<Studied>& people) {
 /// The truths of one kind, a person each.
 std::vector<double> truths_of(Known known, const std::vector<Studied>& people, bool own_work) {
     std::vector<double> truths;
+    truths.reserve(people.size());
     for (const Studied& studied : people) {
         truths.push_back(
             truth_of(known, studied.person, own_work ? studied.own_effect : hand::Form{}));
@@ -411,11 +412,16 @@ void print_devices(const std::vector<Compared>& people) {
         "intervals of the single comparison that hold the known change.\n\n",
         people.size(), k_compared_days, percent(std::log(k_other_effect.performance)),
         percent(std::log(k_other_effect.lateral)));
+    std::printf("%-29s %-40s %6s  %s\n", "", "  change, %", "", "  covers, %");
     std::printf("%-29s %7s", "measure", "known");
     for (const Arm& arm : arms()) {
         std::printf(" %7s", arm.name);
     }
-    std::printf(" %6s  covers: same   24 px   48 px electr.\n", "+-");
+    std::printf(" %6s ", "+-");
+    for (const Arm& arm : arms()) {
+        std::printf(" %7s", arm.name);
+    }
+    std::printf("\n");
     for (const Measure& measure : measures()) {
         if (measure.compared) {
             print_change(measure, people);
