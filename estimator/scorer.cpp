@@ -28,27 +28,63 @@ double interpolate(std::span<const double> values, double place) {
 } // namespace
 
 Scorer::Scorer()
-    : m_tremor_filter{
-          LowPass::butterworth2(dual_pass_cutoff(k_submovement_cutoff_hz), k_sample_rate_hz)} {}
+    : m_calming_filter{
+          LowPass::butterworth2(dual_pass_cutoff(k_calm_cutoff_hz), k_sample_rate_hz)} {}
 
-Submovements Scorer::find_pieces(const Path& path, double cosine, double sine) {
-    m_vx.assign(path.vx_mm_s.begin(), path.vx_mm_s.end());
-    m_vy.assign(path.vy_mm_s.begin(), path.vy_mm_s.end());
-    zero_phase(m_tremor_filter, m_vx, m_vy);
+/// Splits the samples of a movement into the parts along and across the task axis.
+void Scorer::turn(std::span<const double> x, std::span<const double> y, const Axis& axis) {
+    m_along.resize(x.size());
+    m_across.resize(x.size());
+    for (std::size_t i = 0; i < x.size(); ++i) {
+        m_along[i] = x[i] * axis.cosine + y[i] * axis.sine;
+        m_across[i] = y[i] * axis.cosine - x[i] * axis.sine;
+    }
+}
+
+void Scorer::score_turns(const Path& path, const Axis& axis, double band, Scores& scores) {
+    m_calm_x.assign(path.x_px.begin(), path.x_px.end());
+    m_calm_y.assign(path.y_px.begin(), path.y_px.end());
+    zero_phase(m_calming_filter, m_calm_x, m_calm_y);
+    const std::size_t size = path.last - path.first + 1;
+    turn({m_calm_x.data() + path.first, size}, {m_calm_y.data() + path.first, size}, axis);
+    scores.axis_crossings = axis_crossings(m_across, band);
+    scores.direction_changes = turning_points(m_across, band);
+    scores.orthogonal_changes = turning_points(m_along, band);
+}
+
+/// Precondition: m_along and m_across hold the path, not the calmed one.
+void Scorer::score_submovements(const Path& path, const Axis& axis, Scores& scores) {
+    m_calm_x.assign(path.vx_mm_s.begin(), path.vx_mm_s.end());
+    m_calm_y.assign(path.vy_mm_s.begin(), path.vy_mm_s.end());
+    zero_phase(m_calming_filter, m_calm_x, m_calm_y);
     const std::size_t size = path.last - path.first + 1;
     m_along_velocity.resize(size);
     for (std::size_t i = 0; i < size; ++i) {
-        m_along_velocity[i] = m_vx[path.first + i] * cosine + m_vy[path.first + i] * sine;
+        m_along_velocity[i] =
+            m_calm_x[path.first + i] * axis.cosine + m_calm_y[path.first + i] * axis.sine;
     }
-    return find_submovements(m_along_velocity, k_least_prominence.value());
+    const Submovements pieces = find_submovements(m_along_velocity, k_least_prominence.value());
+    scores.submovements = pieces.count;
+    scores.primary_fraction = interpolate(m_along, pieces.primary_end) / scores.distance.value();
+    scores.primary_lateral = Pixels::of(interpolate(m_across, pieces.primary_end));
+}
+
+void Scorer::score_smoothness(const Path& path, Scores& scores) {
+    const std::span<const double> speed{path.speed_mm_s.data() + path.first,
+                                        path.last - path.first + 1};
+    m_thinned.clear();
+    for (std::size_t i = 0; i < speed.size(); i += k_thinning) {
+        m_thinned.push_back(speed[i]);
+    }
+    scores.smoothness_sparc = spectral_arc_length(m_thinned, k_sample_rate_hz / k_thinning);
+    scores.smoothness_ldlj = log_dimensionless_jerk(speed);
 }
 
 Scores Scorer::score(const Path& path, const ScoreRules& rules) {
     Scores scores;
     const double distance = std::hypot(path.press_x_px, path.press_y_px);
-    const double cosine = path.press_x_px / distance;
-    const double sine = path.press_y_px / distance;
-    const double direction = std::atan2(sine, cosine) * k_degrees_per_radian;
+    const Axis axis{path.press_x_px / distance, path.press_y_px / distance};
+    const double direction = std::atan2(axis.sine, axis.cosine) * k_degrees_per_radian;
     scores.distance = Pixels::of(distance);
     // A direction just below 0 rounds up to 360, which is 0.
     const double turned = direction < 0.0 ? direction + 360.0 : direction;
@@ -58,45 +94,23 @@ Scores Scorer::score(const Path& path, const ScoreRules& rules) {
     scores.peak_speed = MillimetresPerSecond::of(path.peak_speed_mm_s);
     scores.time_to_peak = std::chrono::duration_cast<Micros>(path.peak_time - path.start);
 
-    const std::size_t first = path.first;
-    const std::size_t size = path.last - path.first + 1;
-    m_along.resize(size);
-    m_across.resize(size);
-    for (std::size_t i = 0; i < size; ++i) {
-        const double x = path.x_px[first + i];
-        const double y = path.y_px[first + i];
-        m_along[i] = x * cosine + y * sine;
-        m_across[i] = y * cosine - x * sine;
-    }
+    score_turns(path, axis, std::max(rules.dead_band.value(), rules.dead_band_share * distance),
+                scores);
 
+    const std::size_t size = path.last - path.first + 1;
+    turn({path.x_px.data() + path.first, size}, {path.y_px.data() + path.first, size}, axis);
     const Deviation strayed = deviation(m_across);
     scores.error = strayed.error;
     scores.offset = strayed.offset;
     scores.variability = strayed.variability;
     scores.max_deviation = strayed.max_deviation;
-
-    const double band = std::max(rules.dead_band.value(), rules.dead_band_share * distance);
-    scores.axis_crossings = axis_crossings(m_across, band);
-    scores.direction_changes = turning_points(m_across, band);
-    scores.orthogonal_changes = turning_points(m_along, band);
-
-    const Submovements pieces = find_pieces(path, cosine, sine);
-    scores.submovements = pieces.count;
-    scores.primary_fraction = interpolate(m_along, pieces.primary_end) / distance;
-    scores.primary_lateral = Pixels::of(interpolate(m_across, pieces.primary_end));
-
-    const double at_peak = path.peak_sample - static_cast<double>(first);
+    const double at_peak = path.peak_sample - static_cast<double>(path.first);
     scores.initial_angle =
         Degrees::of(std::atan2(interpolate(m_across, at_peak), interpolate(m_along, at_peak)) *
                     k_degrees_per_radian);
 
-    const std::span<const double> speed{path.speed_mm_s.data() + first, size};
-    m_thinned.clear();
-    for (std::size_t i = 0; i < size; i += k_thinning) {
-        m_thinned.push_back(speed[i]);
-    }
-    scores.smoothness_sparc = spectral_arc_length(m_thinned, k_sample_rate_hz / k_thinning);
-    scores.smoothness_ldlj = log_dimensionless_jerk(speed);
+    score_submovements(path, axis, scores);
+    score_smoothness(path, scores);
     return scores;
 }
 

@@ -6,18 +6,19 @@
 #include "estimator/rules.hpp"
 #include "estimator/submovements.hpp"
 
+#include <span>
 #include <vector>
 
 namespace sagitta::estimator {
 
-/// Submovements are looked for in a velocity that is filtered once more, zero-phase, to this: above
-/// it lies the hand's tremor (8 to 12 Hz), which is no submovement and which a coarse sensor does
-/// not see. Cutoffs of 5 to 10 Hz are usual for aimed movements (from memory).
-constexpr double k_submovement_cutoff_hz = 6.0;
-
-/// A piece of speed must stand out by this much, whatever the peak: over a tenth of a second it is
-/// about one step of a 400 CPI sensor, and no less could be seen by one.
-constexpr MillimetresPerSecond k_least_prominence = MillimetresPerSecond::of(0.6);
+/// Changes of direction, axis crossings and submovements are looked for in a path that is filtered
+/// once more, zero-phase, to this: above it lies the hand's tremor (8 to 12 Hz), which is none of
+/// them and which a coarse sensor does not see. Cutoffs of 5 to 10 Hz are usual for aimed
+/// movements (from memory).
+constexpr double k_calm_cutoff_hz = 5.0;
+/// A piece of speed must stand out by this much, whatever the peak: a bump that high and a tenth of
+/// a second long covers 0.05 mm, less than one step of a 400 CPI sensor.
+constexpr MillimetresPerSecond k_least_prominence = MillimetresPerSecond::of(1.0);
 
 class Scorer {
 public:
@@ -33,13 +34,22 @@ public:
     [[nodiscard]] Scores score(const Path& path, const ScoreRules& rules);
 
 private:
-    Submovements find_pieces(const Path& path, double cosine, double sine);
+    /// Direction of the task axis.
+    struct Axis {
+        double cosine;
+        double sine;
+    };
 
-    LowPass m_tremor_filter;
-    std::vector<double> m_vx; ///< mm/s, the whole padded run
-    std::vector<double> m_vy;
-    std::vector<double> m_along;          ///< px
-    std::vector<double> m_across;         ///< px, + = left
+    void turn(std::span<const double> x, std::span<const double> y, const Axis& axis);
+    void score_turns(const Path& path, const Axis& axis, double band, Scores& scores);
+    void score_submovements(const Path& path, const Axis& axis, Scores& scores);
+    void score_smoothness(const Path& path, Scores& scores);
+
+    LowPass m_calming_filter;
+    std::vector<double> m_along;  ///< px
+    std::vector<double> m_across; ///< px, + = left
+    std::vector<double> m_calm_x; ///< the whole padded run
+    std::vector<double> m_calm_y;
     std::vector<double> m_along_velocity; ///< mm/s
     std::vector<double> m_thinned;        ///< mm/s
 };
