@@ -1,5 +1,7 @@
 #include "daemon/recording_session.hpp"
 
+#include "config/calibration_for.hpp"
+
 #include <fmt/format.h>
 #include <utility>
 
@@ -192,10 +194,7 @@ void RecordingSession::take(const PointerChange& change) {
 void RecordingSession::know(PointerIndex pointer) {
     const auto index = static_cast<std::size_t>(pointer);
     const estimator::PointerDescription& description = m_parts.feed.pointers()[index];
-    const config::PointerSettings* said = config::settings_for(m_settings, description.name);
-    const estimator::Calibration calibration = estimator::calibrate(
-        description, said != nullptr ? said->cpi : std::nullopt, estimator::CpiSource::config,
-        said != nullptr ? said->gain : estimator::Gain::unity());
+    const estimator::Calibration calibration = config::calibration_for(m_settings, description);
 
     if (const auto id = m_parts.store.pointer(description, calibration, utc_now())) {
         m_ids[index] = *id;
@@ -449,10 +448,7 @@ Status RecordingSession::status() const {
     for (std::size_t i = 0; i < pointers.size(); ++i) {
         const bool open = m_parts.feed.is_open(static_cast<PointerIndex>(i));
         any_open = any_open || open;
-        const config::PointerSettings* said = config::settings_for(m_settings, pointers[i].name);
-        const auto calibration =
-            estimator::calibrate(pointers[i], said != nullptr ? said->cpi : std::nullopt,
-                                 estimator::CpiSource::config, estimator::Gain::unity());
+        const auto calibration = config::calibration_for(m_settings, pointers[i]);
         status.pointers.push_back({pointers[i].name, to_text(pointers[i].kind),
                                    calibration.cpi.value(), to_text(calibration.cpi_source), open});
     }

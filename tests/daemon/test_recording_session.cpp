@@ -318,6 +318,54 @@ TEST_CASE("new settings hold from now on, and counts live on") {
     CHECK(desk.feed.filter(pointer));
 }
 
+TEST_CASE("a reference width changed within the hour begins a row of its own") {
+    const test::TempDir dir;
+    Desk desk{dir.path() / "s.db"};
+    desk.click();
+    config::Settings settings;
+    settings.rules.scores.reference_width = estimator::Pixels::of(40.0);
+    REQUIRE(desk.session.apply(settings));
+    desk.click();
+    REQUIRE(desk.session.flush());
+    desk.click(); // merged into the second row
+    REQUIRE(desk.session.stop());
+    std::vector<store::StoredHour> rows;
+    REQUIRE(desk.store.for_each_hour({}, [&](const auto& row) { rows.push_back(row); }));
+    REQUIRE(rows.size() == 2);
+    CHECK(rows[0].start == rows[1].start);
+    CHECK(rows[0].pointer == rows[1].pointer);
+    const auto& narrow = rows[0].summary;
+    const auto& wide = rows[1].summary;
+    CHECK(narrow.reference_width.value() == 20.0);
+    CHECK(wide.reference_width.value() == 40.0);
+    CHECK(narrow.clicks == 1);
+    CHECK(wide.clicks == 2);
+    // The clicks are alike, so W of the first row is W/2 of the second.
+    CHECK(wide.difficulty_bits[0] / 2.0 == doctest::Approx(narrow.difficulty_bits[1]));
+    CHECK(wide.difficulty_bits[1] / 2.0 == doctest::Approx(narrow.difficulty_bits[2]));
+}
+
+TEST_CASE("new settings bring a gain table's counts to the resolution that it is made for") {
+    const test::TempDir dir;
+    Desk desk{dir.path() / "s.db"};
+    desk.click();
+    config::Settings settings;
+    config::PointerSettings mouse;
+    mouse.name = "mouse";
+    mouse.gain = estimator::Gain::table({{estimator::MillimetresPerSecond::of(0.0), 1.0},
+                                         {estimator::MillimetresPerSecond::of(1.0), 1.0}})
+                     .value();
+    mouse.gain_normalised_to = estimator::Cpi::of(500.0); // the mouse counts as one of 1000
+    settings.pointers.push_back(mouse);
+    REQUIRE(desk.session.apply(settings));
+    desk.click();
+    REQUIRE(desk.session.stop());
+    const auto found = desk.movements();
+    REQUIRE(found.size() == 2);
+    CHECK(found[1].scores.distance.value() ==
+          doctest::Approx(found[0].scores.distance.value() / 2.0).epsilon(0.01));
+}
+
 TEST_CASE("new settings are refused while the batch of the old ones cannot be written") {
     const test::TempDir dir;
     Desk desk{dir.path() / "s.db"};
