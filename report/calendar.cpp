@@ -163,6 +163,15 @@ std::string to_text(Day day) {
                        unsigned{ymd.day()});
 }
 
+std::string day_text(Day day) {
+    constexpr std::array<const char*, 7> k_weekdays = {
+        "Monday", "Tuesday", "Wednesday", "Thursday", "Friday", "Saturday", "Sunday"};
+    const date::year_month_day ymd{day};
+    return fmt::format("{} {} {}",
+                       k_weekdays.at(static_cast<std::size_t>((day - monday_of(day)).count())),
+                       unsigned{ymd.day()}, month_name(ymd));
+}
+
 std::string span_text(Day first, Day last) {
     const date::year_month_day a{first};
     const date::year_month_day b{last};

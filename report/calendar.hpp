@@ -62,6 +62,8 @@ struct IsoWeek {
 
 /// "2026-11-23".
 [[nodiscard]] std::string to_text(Day day);
+/// "Wednesday 25 November".
+[[nodiscard]] std::string day_text(Day day);
 /// "23 to 29 November 2026", naming month and year only where they differ.
 [[nodiscard]] std::string span_text(Day first, Day last);
 /// "2026-11-23T09:30:00.000125Z".

@@ -191,7 +191,10 @@ void look_at_store(const Session& session, CheckFacts& facts) {
 void look_at_daemon(CheckFacts& facts) {
     const auto status = ask_daemon("status");
     if (!status) {
-        facts.daemon_error = status.error().message;
+        // What mends it stands beside the finding.
+        facts.daemon_error = status.error().code == estimator::ErrorCode::not_found
+                                 ? "sagittad is not running"
+                                 : status.error().message;
         return;
     }
     try {

@@ -1,5 +1,6 @@
 #include "report/devices.hpp"
 
+#include "config/calibration_for.hpp"
 #include "report/table.hpp"
 
 #include <algorithm>
@@ -78,9 +79,7 @@ std::vector<DeviceHere> describe_devices(std::vector<input::PointerNode> nodes,
     std::vector<DeviceHere> devices;
     for (input::PointerNode& node : nodes) {
         const config::PointerSettings* mine = config::settings_for(settings, node.description.name);
-        const auto calibration =
-            estimator::calibrate(node.description, mine != nullptr ? mine->cpi : std::nullopt,
-                                 CpiSource::config, estimator::Gain::unity());
+        const auto calibration = config::calibration_for(settings, node.description);
         devices.push_back({std::move(node), calibration.cpi, calibration.cpi_source,
                            mine != nullptr && mine->ignore});
     }

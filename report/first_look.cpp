@@ -95,14 +95,14 @@ std::string first_look_text(const FirstLook& look, const Session& session) {
     }
     const estimator::Interval& difference = *look.difference[1];
     const std::string second = pointer_title(look.pointers[1].pointer);
-    const char* so_far = difference.low > 0.0    ? "is higher"
-                         : difference.high < 0.0 ? "is lower"
-                                                 : "does not differ clearly";
-    return text +
-           wrapped(fmt::format("So far the throughput of {} {}. This is a first look, not a "
-                               "verdict: days are compared as they came, without allowing for "
-                               "distances, directions, practice or how often one looks.",
-                               second, so_far));
+    const char* so_far = difference.low > 0.0    ? "is higher than"
+                         : difference.high < 0.0 ? "is lower than"
+                                                 : "does not differ clearly from";
+    return text + wrapped(fmt::format(
+                      "So far the throughput of {} {} that of {}. This is a first look, not a "
+                      "verdict: days are compared as they came, without allowing for "
+                      "distances, directions, practice or how often one looks.",
+                      second, so_far, pointer_title(look.pointers[0].pointer)));
 }
 
 } // namespace sagitta::report

@@ -1,4 +1,5 @@
 // The sagitta command: parses arguments, wires the parts, maps errors to exit codes.
+#include "config/nearest.hpp"
 #include "report/check.hpp"
 #include "report/daemon_client.hpp"
 #include "report/demo.hpp"
@@ -6,6 +7,7 @@
 #include "report/export.hpp"
 #include "report/record.hpp"
 #include "report/replay.hpp"
+#include "report/table.hpp"
 #include "report/week.hpp"
 
 #include <CLI/CLI.hpp>
@@ -62,6 +64,12 @@ CLI::Validator time_validator() {
             ""};
 }
 
+/// A range that the option's own text tells of.
+template <class Number>
+CLI::Validator within(Number low, Number high) {
+    return CLI::Range(low, high).description("");
+}
+
 /// Turns one of the words into its value.
 template <class Value>
 CLI::Validator one_of(const std::map<std::string, Value>& words) {
@@ -85,9 +93,9 @@ CLI::App* add_command(CLI::App& app, Common& common, const char* name, const cha
 }
 
 void add_week(CLI::App& app, Common& common, Command& chosen) {
-    CLI::App* command =
-        add_command(app, common, "week", "how a week went, beside the four weeks before",
-                    "sagitta week --ending 2026-11-29 --by direction");
+    CLI::App* command = add_command(
+        app, common, "week", "how a week went beside the four weeks before, and what changed",
+        "sagitta week --ending 2026-11-29 --by direction");
     auto request = std::make_shared<report::WeekRequest>();
     command->add_option("--ending", request->ending, "a day of the ISO week (default: today)")
         ->check(date_validator())
@@ -116,14 +124,15 @@ void add_replay(CLI::App& app, Common& common, Command& chosen) {
         "sagitta replay --store trial.db --pointer 'Upright mouse' --cpi 1000 monday.raw");
     auto request = std::make_shared<report::ReplayRequest>();
     command->add_option("RECORDING", request->recordings, "files, replayed one after the other")
-        ->required();
+        ->required()
+        ->type_name("");
     command->add_option("--pointer", request->pointer, "name of the recording's pointer")
         ->type_name("NAME");
-    command->add_option("--cpi", request->cpi, "counts per inch of the pointer")
-        ->check(CLI::Range(50.0, 50'000.0))
+    command->add_option("--cpi", request->cpi, "counts per inch of the pointer, 50 to 50000")
+        ->check(within(50.0, 50'000.0))
         ->type_name("N");
-    command->add_option("--gain", request->gain, "screen px per count")
-        ->check(CLI::Range(0.001, 1000.0))
+    command->add_option("--gain", request->gain, "screen px per count, 0.001 to 1000")
+        ->check(within(0.001, 1000.0))
         ->type_name("F");
     command
         ->add_option("--start", request->start,
@@ -146,11 +155,11 @@ void add_record(CLI::App& app, Common& common, Command& chosen) {
                     "sagitta record --pointer 'Thumb trackball' --for 600 trial.raw");
     auto request = std::make_shared<report::RecordRequest>();
     auto seconds = std::make_shared<std::optional<double>>();
-    command->add_option("FILE", request->file, "the file to make")->required();
+    command->add_option("FILE", request->file, "the file to make")->required()->type_name("");
     command->add_option("--pointer", request->pointer, "name or node (default: the only one)")
         ->type_name("NAME");
     command->add_option("--for", *seconds, "end after this long")
-        ->check(CLI::Range(0.001, 31'536'000.0))
+        ->check(within(0.001, 31'536'000.0))
         ->type_name("SECONDS");
     command->callback([&chosen, request, seconds] {
         if (*seconds) {
@@ -177,17 +186,17 @@ void add_export(CLI::App& app, Common& common, Command& chosen) {
         {"movements", report::ExportTable::movements}, {"hours", report::ExportTable::hours}};
     const std::map<std::string, report::RowFormat> formats = {{"csv", report::RowFormat::csv},
                                                               {"jsonl", report::RowFormat::jsonl}};
-    command->add_option("--table", request->table, "default: movements")
+    command->add_option("--table", request->table, "which rows (default: movements)")
         ->transform(one_of(tables))
         ->type_name("movements|hours");
     command->add_option("--format", request->format, "how to write rows")
         ->required()
         ->transform(one_of(formats))
         ->type_name("csv|jsonl");
-    command->add_option("--from", request->from, "from here on")
+    command->add_option("--from", request->from, "only rows from this time on")
         ->check(time_validator())
         ->type_name("TIME");
-    command->add_option("--to", request->to, "up to here")
+    command->add_option("--to", request->to, "only rows before this time")
         ->check(time_validator())
         ->type_name("TIME");
     command->add_option("--pointer", request->pointer, "only this pointer")->type_name("NAME");
@@ -214,8 +223,8 @@ void add_demo(CLI::App& app, Common& common, Command& chosen) {
         add_command(app, common, "demo", "weeks of a simulated desk through the real pipeline",
                     "sagitta demo --weeks 8 --store demo.db");
     auto request = std::make_shared<report::DemoRequest>();
-    command->add_option("--weeks", request->weeks, "how many (default: 6)")
-        ->check(CLI::Range(1, 52))
+    command->add_option("--weeks", request->weeks, "how many, 1 to 52 (default: 6)")
+        ->check(within(1, 52))
         ->type_name("N");
     command->callback([&chosen, request] {
         chosen = {"demo", [request](const Session& s) { return report::run_demo(*request, s); }};
@@ -241,7 +250,8 @@ void add_daemon_orders(CLI::App& app, Common& common, Command& chosen) {
     add("label", "name the condition of what follows; '' for none", "sagitta label 'left hand'",
         DaemonOrder::label)
         ->add_option("TEXT", *label, "the condition")
-        ->required();
+        ->required()
+        ->type_name("");
 }
 
 /// Reads the settings; a wrong config is kept in `config` for the command that can live with it.
@@ -313,9 +323,26 @@ int run(const Common& common, const Command& command, ConfigFound& config) {
     return output->all_well ? k_done : k_could_not;
 }
 
+/// What to say to a line without a known command.
+std::string no_command_text(const CLI::App& app) {
+    std::vector<std::string> known;
+    for (const CLI::App* command : app.get_subcommands(nullptr)) {
+        known.push_back(command->get_name());
+    }
+    for (const std::string& word : app.remaining()) {
+        if (!word.starts_with('-')) {
+            const auto meant = config::nearest(word, known);
+            return "'" + report::printable(word) + "' is not a command" +
+                   (meant ? "; did you mean " + *meant + "?" : std::string{});
+        }
+    }
+    return "a command is needed, such as week or demo";
+}
+
 int parse_and_run(int argc, char** argv) {
     CLI::App app{"Sagitta measures how well you point, from your everyday clicks.", "sagitta"};
-    app.set_version_flag("--version", "sagitta " SAGITTA_VERSION);
+    app.set_help_flag("-h,--help", "print this help");
+    app.set_version_flag("--version", "sagitta " SAGITTA_VERSION, "print the version");
     app.footer("Each command tells more: sagitta week --help\nExample: sagitta demo");
     app.require_subcommand(1);
     app.get_formatter()->column_width(26);
@@ -341,8 +368,7 @@ int parse_and_run(int argc, char** argv) {
             chosen.empty() ? "sagitta" : "sagitta " + chosen.front()->get_name();
         const bool no_command =
             chosen.empty() && dynamic_cast<const CLI::RequiredError*>(&error) != nullptr;
-        const std::string what =
-            no_command ? "a command is needed, such as week or demo" : std::string{error.what()};
+        const std::string what = no_command ? no_command_text(app) : std::string{error.what()};
         return complain(who, what + "; see '" + who + " --help'", k_wrong_usage);
     }
     return run(common, command, config);

@@ -56,8 +56,12 @@ std::string signed_interval(const estimator::Interval& interval) {
     return interval_text(interval, true);
 }
 
+std::string signed_within(double value, double width) {
+    return fixed(value, std::min(decimals_for(width / 2.0, 2), 3), true);
+}
+
 std::string plain(double value) {
-    return fixed(value, decimals_for(std::abs(value), 3), false);
+    return fixed(value, std::min(decimals_for(std::abs(value), 3), 2), false);
 }
 
 std::string share(std::uint64_t part, std::uint64_t whole) {

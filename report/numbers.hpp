@@ -20,6 +20,8 @@ namespace sagitta::report {
 [[nodiscard]] std::string with_interval(const estimator::Interval& interval);
 /// The same with a sign, "+0.05 ± 0.13": for differences.
 [[nodiscard]] std::string signed_interval(const estimator::Interval& interval);
+/// "+0.05": a value with a sign and as many decimals as an interval of this width warrants.
+[[nodiscard]] std::string signed_within(double value, double width);
 /// A mean without an interval: three significant digits, at most two decimals.
 [[nodiscard]] std::string plain(double value);
 /// "59 %", "0.4 %" below one; "0 %" for none.

@@ -1,5 +1,6 @@
 #include "report/replay.hpp"
 
+#include "config/calibration_for.hpp"
 #include "estimator/pipeline.hpp"
 #include "input/recording.hpp"
 #include "report/numbers.hpp"
@@ -150,22 +151,18 @@ Result<void> Replay::refuse_second_time() {
 
 Result<estimator::Calibration>
 Replay::calibration_of(const estimator::PointerDescription& pointer) {
-    const config::PointerSettings* settings =
-        config::settings_for(m_session.settings, pointer.name);
-    estimator::Gain gain = settings != nullptr ? settings->gain : estimator::Gain::unity();
+    config::CalibrationOverrides overrides;
     if (m_request.gain) {
         auto flat = estimator::Gain::flat(*m_request.gain);
         if (!flat) {
             return tl::unexpected{flat.error()};
         }
-        gain = *flat;
+        overrides.gain = *flat;
     }
     if (m_request.cpi) {
-        return estimator::calibrate(pointer, estimator::Cpi::of(*m_request.cpi),
-                                    estimator::CpiSource::command_line, std::move(gain));
+        overrides.cpi = estimator::Cpi::of(*m_request.cpi);
     }
-    return estimator::calibrate(pointer, settings != nullptr ? settings->cpi : std::nullopt,
-                                estimator::CpiSource::config, std::move(gain));
+    return config::calibration_for(m_session.settings, pointer, overrides);
 }
 
 Result<void> Replay::meet_pointers(std::span<const estimator::PointerDescription> pointers) {

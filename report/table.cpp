@@ -133,4 +133,12 @@ std::string wrapped(std::string_view paragraph, std::size_t width) {
     return line.empty() ? out : out + line + "\n";
 }
 
+std::string under_heading(std::string_view paragraph) {
+    std::string text = "  " + wrapped(paragraph, 94);
+    for (std::size_t end = text.find('\n'); end + 1 < text.size(); end = text.find('\n', end + 1)) {
+        text.insert(end + 1, "  ");
+    }
+    return text;
+}
+
 } // namespace sagitta::report

@@ -40,4 +40,7 @@ private:
 /// Breaks a paragraph at blanks into lines of at most `width` places, each ended by a newline.
 [[nodiscard]] std::string wrapped(std::string_view paragraph, std::size_t width = 96);
 
+/// A paragraph that stands under a heading as a table does: every line indented by 2.
+[[nodiscard]] std::string under_heading(std::string_view paragraph);
+
 } // namespace sagitta::report

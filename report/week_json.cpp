@@ -51,6 +51,55 @@ const char* change_name(Change change) {
     return "unknown";
 }
 
+const char* signal_name(estimator::EwmaSignal signal) {
+    switch (signal) {
+    case estimator::EwmaSignal::above:
+        return "above";
+    case estimator::EwmaSignal::below:
+        return "below";
+    case estimator::EwmaSignal::none:
+        return "none";
+    }
+    return "none";
+}
+
+Json trend_json(const std::optional<DailyTrend>& trend) {
+    if (!trend) {
+        return nullptr;
+    }
+    return {{"days", trend->days},
+            {"per_week", trend->line.slope},
+            {"low", trend->line.low},
+            {"high", trend->line.high},
+            {"mann_kendall_s", trend->test.s},
+            {"mann_kendall_z", trend->test.z},
+            {"mann_kendall_p", trend->test.p}};
+}
+
+Json chart_json(const DailyChart& chart) {
+    Json json = {{"days_before", chart.days_before},
+                 {"baseline_mean", chart.baseline ? Json(chart.baseline->mean) : Json(nullptr)},
+                 {"baseline_sd", chart.baseline ? Json(chart.baseline->sd) : Json(nullptr)},
+                 {"flag", nullptr},
+                 {"days", Json::array()}};
+    if (chart.flag) {
+        json["flag"] = {{"direction", signal_name(chart.flag->direction)},
+                        {"since", to_text(chart.flag->since)},
+                        {"until", to_text(chart.flag->until)},
+                        {"lasting", chart.flag->lasting}};
+    }
+    for (const ChartDay& day : chart.days) {
+        json["days"].push_back({{"day", to_text(day.daily.day)},
+                                {"value", day.daily.value},
+                                {"statistic", day.point.statistic},
+                                {"lower", day.point.lower},
+                                {"upper", day.point.upper},
+                                {"signal", signal_name(day.point.signal)}});
+    }
+    json["trend"] = trend_json(chart.trend);
+    return json;
+}
+
 Json exposure_json(const ExposureSum& exposure) {
     return {{"active_s", estimator::seconds(exposure.active)},
             {"presses", exposure.presses},
@@ -79,6 +128,10 @@ Json series_json(const SeriesWeek& series, WeekDetail detail) {
             {"four_weeks_before", mean_json(comparison.before)},
             {"difference", interval_json(comparison.difference)},
             {"change", change_name(comparison.change())}};
+    }
+    for (std::size_t w = 0; w < k_watched.size(); ++w) {
+        json["charts"][k_measure_names.at(static_cast<std::size_t>(k_watched[w]))] =
+            chart_json(series.charts[w]);
     }
     if (detail == WeekDetail::by_direction) {
         for (std::size_t s = 0; s < estimator::k_sectors; ++s) {
@@ -127,12 +180,20 @@ std::string week_json(const WeekSummary& week, WeekDetail detail, const Session&
         json["outcomes"][std::string{to_text(static_cast<estimator::Outcome>(o))}] =
             week.outcomes[o];
     }
+    const estimator::EwmaRules rules;
+    json["chart_rules"] = {
+        {"weight", rules.weight},
+        {"width_sd", rules.width},
+        {"least_days_before", estimator::EwmaChart::k_min_baseline},
+        {"days_between_false_flags", estimator::k_ewma_days_between_false_signals}};
     json["pointers"] = Json::array();
     for (const SeriesWeek& series : week.series) {
         json["pointers"].push_back(series_json(series, detail));
     }
     json["note"] = "implied throughput uses a reference target width; the true width is unseen; "
                    "not ISO throughput";
+    json["caution"] = "measures pointing and does not diagnose; pain, numbness or weakness are for "
+                      "a clinician";
     return json.dump(2) + "\n";
 }
 

@@ -48,7 +48,12 @@ double value_at(const estimator::PairMoments& moments, double slope, double log_
     return std::exp(moments.mean_y + slope * (log_x - moments.mean_x));
 }
 
-DayComparison compare_days(std::vector<double> now, std::vector<double> before, double confidence) {
+DayComparison compare_days(const std::vector<DailyValue>& values, Day monday, double confidence) {
+    std::vector<double> now;
+    std::vector<double> before;
+    for (const DailyValue& value : values) {
+        (value.day >= monday ? now : before).push_back(value.value);
+    }
     DayComparison comparison;
     if (now.size() >= k_min_days && before.size() >= k_min_days) {
         if (auto difference = estimator::difference_interval(now, before, confidence)) {
@@ -182,12 +187,11 @@ void WeekBuilder::State::fill_measures(SeriesWeek& week, const std::map<Day, Day
     const double error_slope = pooled_slope(error_xy, error_xx);
     const double log_standard = std::log(rules.standard_distance.value());
 
-    std::array<std::array<std::vector<double>, 2>, k_measures> values;
+    std::array<std::vector<DailyValue>, k_measures> values;
     for (const auto& [day, sums] : days) {
         const HourSummary& all = sums.sums;
-        const std::size_t side = is_now(day) ? 0 : 1;
-        const auto keep = [&](Measure measure, double value) {
-            values.at(static_cast<std::size_t>(measure)).at(side).push_back(value);
+        const auto keep = [&values, date = day](Measure measure, double value) {
+            values.at(static_cast<std::size_t>(measure)).push_back({date, value});
         };
         const auto same_width = sums.by_width.find(width.value());
         if (same_width != sums.by_width.end() && same_width->second.counts()) {
@@ -198,7 +202,7 @@ void WeekBuilder::State::fill_measures(SeriesWeek& week, const std::map<Day, Day
         if (all.clicks < k_min_day_clicks) {
             continue;
         }
-        ++(side == 0 ? week.days_counted : week.days_counted_before);
+        ++(is_now(day) ? week.days_counted : week.days_counted_before);
         week.days_other_width +=
             same_width == sums.by_width.end() || same_width->second.clicks < all.clicks ? 1U : 0U;
         keep(Measure::movement_time,
@@ -209,8 +213,11 @@ void WeekBuilder::State::fill_measures(SeriesWeek& week, const std::map<Day, Day
         keep(Measure::submovements, all.submovements.mean);
     }
     for (std::size_t m = 0; m < k_measures; ++m) {
-        week.measures[m] =
-            compare_days(std::move(values[m][0]), std::move(values[m][1]), rules.confidence);
+        week.measures[m] = compare_days(values[m], monday, rules.confidence);
+    }
+    for (std::size_t w = 0; w < k_watched.size(); ++w) {
+        week.charts[w] =
+            chart_of(values.at(static_cast<std::size_t>(k_watched[w])), monday, rules.confidence);
     }
 }
 

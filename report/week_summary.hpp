@@ -5,6 +5,7 @@
 
 #include "estimator/interval.hpp"
 #include "report/calendar.hpp"
+#include "report/daily_chart.hpp"
 #include "store/store.hpp"
 
 #include <array>
@@ -57,6 +58,9 @@ enum class Measure {
     submovements             ///< a movement
 };
 constexpr std::size_t k_measures = 8;
+/// The measures whose daily values are watched for changes.
+constexpr std::array<Measure, 3> k_watched = {Measure::throughput, Measure::movement_time,
+                                              Measure::error};
 
 struct SectorWeek {
     std::uint64_t clicks = 0;
@@ -84,6 +88,7 @@ struct SeriesWeek {
     /// Days left out of throughput since they were recorded with another reference width.
     std::size_t days_other_width = 0;
     std::array<DayComparison, k_measures> measures{};
+    std::array<DailyChart, k_watched.size()> charts{}; ///< as k_watched
     std::array<SectorWeek, estimator::k_sectors> sectors{};
     std::array<HourOfDay, 24> hours{};
 

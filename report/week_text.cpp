@@ -1,4 +1,5 @@
 // The screen of sagitta week.
+#include "report/change_text.hpp"
 #include "report/numbers.hpp"
 #include "report/table.hpp"
 #include "report/week.hpp"
@@ -65,7 +66,7 @@ std::string span_of(const WeekSummary& week) {
                        span_text(week.monday, week.monday + date::days{6}));
 }
 
-std::string opening(const WeekSummary& week) {
+std::string opening(const WeekSummary& week, WeekDetail detail) {
     const std::uint64_t clicks = week.outcomes[static_cast<std::size_t>(Outcome::scored_click)];
     const std::uint64_t drags = week.outcomes[static_cast<std::size_t>(Outcome::scored_drag)];
     const bool all_simulated =
@@ -76,11 +77,13 @@ std::string opening(const WeekSummary& week) {
     for (const SeriesWeek& one : week.series) {
         pointers.insert(one.pointer.id);
     }
-    return wrapped(fmt::format(
+    const std::string sentence = fmt::format(
         "In {} {} made {} ({}, {}) on {} with {}.", span_of(week),
         all_simulated ? "the simulated hand" : "you", count_of(clicks + drags, "scored movement"),
         count_of(clicks, "click"), count_of(drags, "drag"), count_of(week.days_with_motion, "day"),
-        count_of(pointers.size(), "pointer")));
+        count_of(pointers.size(), "pointer"));
+    const std::string flags = detail == WeekDetail::summary ? flags_in_short(week) : "";
+    return wrapped(flags.empty() ? sentence : sentence + " " + flags);
 }
 
 std::string empty_week(const WeekSummary& week, const Session& session,
@@ -112,7 +115,12 @@ std::string exposure_table(const WeekSummary& week) {
     row("wheel detents", [](const ExposureSum& e) {
         return grouped(static_cast<std::uint64_t>(e.wheel_detents + 0.5));
     });
-    row("hand travel", [](const ExposureSum& e) { return length_text(e.hand_travel); });
+    const bool assumed =
+        std::any_of(week.series.begin(), week.series.end(), [](const SeriesWeek& one) {
+            return one.pointer.cpi_source == estimator::CpiSource::assumed;
+        });
+    row(assumed ? "hand travel (CPI assumed)" : "hand travel",
+        [](const ExposureSum& e) { return length_text(e.hand_travel); });
     return table.text();
 }
 
@@ -135,15 +143,6 @@ std::string series_heading(const SeriesWeek& series, const Session& session) {
     return session.style.heading(shortened(pointer_title(series.pointer) + label, 96)) + "\n";
 }
 
-/// A paragraph that stands under a heading as its table does.
-std::string under_heading(const std::string& paragraph) {
-    std::string text = fmt::format("  {}", wrapped(paragraph, 94));
-    for (std::size_t end = text.find('\n'); end + 1 < text.size(); end = text.find('\n', end + 1)) {
-        text.insert(end + 1, "  ");
-    }
-    return text;
-}
-
 /// Whether the days are enough, in words.
 std::string days_sentence(const SeriesWeek& series) {
     if (series.days_counted == 0) {
@@ -152,12 +151,16 @@ std::string days_sentence(const SeriesWeek& series) {
                                          count_of(series.clicks, "scored click"),
                                          k_min_day_clicks));
     }
-    std::string sentence =
-        fmt::format("{} on {}; {} with {} or more", count_of(series.clicks, "scored click"),
-                    count_of(series.days_with_clicks, "day"), count_of(series.days_counted, "day"),
-                    k_min_day_clicks);
+    std::string sentence = fmt::format("{} on {}", count_of(series.clicks, "scored click"),
+                                       count_of(series.days_with_clicks, "day"));
+    sentence +=
+        series.days_counted == series.days_with_clicks
+            ? fmt::format(", each with {} or more", k_min_day_clicks)
+            : fmt::format(", {} of them with {} or more", series.days_counted, k_min_day_clicks);
     if (series.days_counted_before > 0) {
-        sentence += fmt::format(" ({} in the four weeks before)", series.days_counted_before);
+        sentence +=
+            fmt::format(" ({} such {} in the four weeks before)", series.days_counted_before,
+                        series.days_counted_before == 1 ? "day" : "days");
     }
     if (series.days_counted < k_min_days) {
         sentence += fmt::format(": too few days for an interval, which needs {}", k_min_days);
@@ -256,16 +259,21 @@ std::string notes(const WeekSummary& week, WeekDetail detail, const Session& ses
             "by chance.",
             percent, k_min_sector_clicks));
     } else if (detail == WeekDetail::by_hour) {
-        text += wrapped(fmt::format("Throughput is a mean over days (± half of the {} % interval); "
-                                    "an hour counts from {} scored clicks on. Hours are those of "
-                                    "{}.",
-                                    percent, k_min_day_clicks, session.calendar.zone_name()));
+        text += wrapped(
+            fmt::format("Throughput is a mean over days (± half of the {} % interval); "
+                        "a day counts for an hour from {} scored clicks in it on. Hours are "
+                        "those of "
+                        "{}.",
+                        percent, k_min_day_clicks, session.calendar.zone_name()));
     } else {
         text += wrapped(fmt::format(
-            "Each value is a mean over days (± half of its {} % interval); before = the four weeks "
-            "before; difference = this week less before. A difference is marked when its interval "
-            "leaves out zero, which about one in {:.0f} does by chance alone.",
+            "Each value is a mean over days ± half of its {} % interval, with days as the unit; "
+            "before = the four weeks before; difference = this week less before. A difference "
+            "is called higher or lower when its interval leaves out zero, which about one in "
+            "{:.0f} "
+            "does by chance alone.",
             percent, 1.0 / (1.0 - week.confidence)));
+        text += flag_note(week);
     }
     if (detail != WeekDetail::by_direction) {
         text += wrapped(fmt::format("Implied throughput uses a reference target width W of {} px; "
@@ -294,7 +302,7 @@ std::string week_text(const WeekSummary& week, WeekDetail detail, const Session&
     if (week.empty()) {
         return empty_week(week, session, last_hour);
     }
-    std::string text = opening(week);
+    std::string text = opening(week, detail);
     if (week.any_simulated()) {
         text +=
             session.style.warning("SIMULATED DATA: made by the simulated hand, not by a person. "
@@ -314,6 +322,7 @@ std::string week_text(const WeekSummary& week, WeekDetail detail, const Session&
             text += series.days_counted + series.days_counted_before > 0
                         ? measure_table(series, week)
                         : "";
+            text += change_lines(series, week);
             break;
         case WeekDetail::by_direction:
             text += direction_table(series);

@@ -8,6 +8,11 @@ using namespace sagitta::report;
 using test::at;
 using test::day_of;
 
+TEST_CASE("a day is named with its weekday and month") {
+    CHECK(day_text(date::local_days{date::year{2026} / 11 / 25}) == "Wednesday 25 November");
+    CHECK(day_text(date::local_days{date::year{2027} / 1 / 3}) == "Sunday 3 January");
+}
+
 TEST_CASE("ISO weeks begin on Monday and belong to the year of their Thursday") {
     CHECK(monday_of(day_of(2026, 11, 29)) == day_of(2026, 11, 23));
     CHECK(monday_of(day_of(2026, 11, 23)) == day_of(2026, 11, 23));

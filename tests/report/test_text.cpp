@@ -6,6 +6,18 @@
 using namespace sagitta;
 using namespace sagitta::report;
 
+TEST_CASE("a value is shown with the digits that the width of its interval warrants") {
+    CHECK(signed_within(0.0488, 0.0691) == "+0.049");
+    CHECK(signed_within(-23.4, 40.0) == "-23");
+    CHECK(signed_within(-0.0001, 0.4) == "0.00");
+}
+
+TEST_CASE("a paragraph under a heading is indented on every line") {
+    CHECK(under_heading("short") == "  short\n");
+    const std::string text = under_heading(std::string(60, 'a') + " " + std::string(60, 'b'));
+    CHECK(text == "  " + std::string(60, 'a') + "\n  " + std::string(60, 'b') + "\n");
+}
+
 TEST_CASE("an interval shows as many digits as its width warrants") {
     CHECK(with_interval({3.1512, 3.0312, 3.2712, 4}) == "3.15 ± 0.12");
     CHECK(with_interval({913.0, 880.0, 946.0, 4}) == "913 ± 33");

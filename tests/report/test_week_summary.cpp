@@ -126,6 +126,55 @@ TEST_CASE("throughput leaves out days of another reference width and counts them
     CHECK(week.scored() == 80);
 }
 
+TEST_CASE("two reference widths within one hour stay apart in throughput") {
+    std::vector<store::StoredHour> hours;
+    for (unsigned day = 23; day <= 25; ++day) {
+        auto earlier = hour_of(at(2026, 11, day, 9), k_mouse, 40, 1600);
+        earlier.summary.reference_width = estimator::Pixels::of(40.0);
+        hours.push_back(earlier);
+        hours.push_back(hour_of(at(2026, 11, day, 9), k_mouse, 40, 800));
+    }
+    const WeekSummary mixed = week_48(hours);
+    const WeekSummary one_width = week_48({hours[1], hours[3], hours[5]});
+    const SeriesWeek& series = mixed.series.at(0);
+    CHECK(series.clicks == 240);
+    CHECK(series.days_other_width == 3);
+    for (const Measure measure :
+         {Measure::throughput, Measure::throughput_half_width, Measure::throughput_double_width}) {
+        CHECK(series.measure(measure).now.values ==
+              one_width.series.at(0).measure(measure).now.values);
+    }
+    CHECK(series.hours[9].throughput.values == one_width.series.at(0).hours[9].throughput.values);
+    CHECK(series.measure(Measure::movement_time).now.mean.value() >
+          1.2 * one_width.series.at(0).measure(Measure::movement_time).now.mean.value());
+}
+
+TEST_CASE("a week's charts watch three measures against the days before") {
+    std::vector<store::StoredHour> hours;
+    for (unsigned day = 2; day <= 20; ++day) {
+        hours.push_back(hour_of(at(2026, 11, day, 9), k_mouse, 40, 1000 + 7.0 * (day % 4)));
+    }
+    for (unsigned day = 23; day <= 27; ++day) {
+        const double slower = day >= 25 ? 100.0 : 0.0;
+        hours.push_back(
+            hour_of(at(2026, 11, day, 9), k_mouse, 40, 1000 + 7.0 * (day % 4) + slower));
+    }
+    const SeriesWeek series = week_48(hours).series.at(0);
+    const DailyChart& throughput = series.charts[0];
+    const DailyChart& time = series.charts[1];
+    CHECK(throughput.days_before == 19);
+    REQUIRE(throughput.flag.has_value());
+    CHECK(throughput.flag->since == day_of(2026, 11, 25));
+    CHECK(throughput.flag->direction == estimator::EwmaSignal::below);
+    REQUIRE(time.flag.has_value());
+    CHECK(time.flag->direction == estimator::EwmaSignal::above);
+    CHECK(time.flag->lasting);
+    // ME is 5 px on every day: nothing varies, so nothing can be unusual.
+    CHECK_FALSE(series.charts[2].baseline.has_value());
+    CHECK(series.charts[2].days.empty());
+    CHECK_FALSE(series.charts[2].flag.has_value());
+}
+
 TEST_CASE("sectors and hours of the day take days as the unit") {
     std::vector<store::StoredHour> hours;
     for (unsigned day = 23; day <= 25; ++day) {
