@@ -333,7 +333,7 @@ std::string no_command_text(const CLI::App& app) {
         if (!word.starts_with('-')) {
             const auto meant = config::nearest(word, known);
             return "'" + report::printable(word) + "' is not a command" +
-                   (meant ? "; did you mean " + *meant + "?" : std::string{});
+                   (meant ? " (did you mean " + *meant + "?)" : std::string{});
         }
     }
     return "a command is needed, such as week or demo";

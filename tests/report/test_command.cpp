@@ -140,6 +140,14 @@ TEST_CASE("help and version succeed, and every help ends with an example") {
     }
 }
 
+TEST_CASE("a command that does not exist is named, with the one that was probably meant") {
+    const Place place;
+    const auto ran = place.run("wek");
+    CHECK(ran.code == 2);
+    CHECK(ran.err ==
+          "sagitta: 'wek' is not a command (did you mean week?); see 'sagitta --help'\n");
+}
+
 TEST_CASE("wrong usage exits 2 with a sentence on standard error") {
     const Place place;
     for (const char* line :

@@ -122,6 +122,19 @@ TEST_CASE("the week's JSON is valid and holds what the screen shows") {
     CHECK(throughput["this_week"]["low"] < throughput["this_week"]["mean"]);
     CHECK(json["pointers"][1]["measures"]["error_px"]["this_week"]["low"].is_null());
     CHECK(mouse["directions"].size() == 8);
+    const auto& chart = mouse["charts"]["movement_time_ms"];
+    CHECK(chart["days_before"] == 19);
+    CHECK(chart["flag"]["direction"] == "below");
+    CHECK(chart["flag"]["since"] == "2026-11-23");
+    CHECK(chart["flag"]["lasting"] == true);
+    CHECK(chart["days"].size() == 5);
+    CHECK(chart["days"][4]["statistic"] < chart["days"][4]["lower"]);
+    CHECK(chart["trend"]["days"] == 24);
+    CHECK(chart["trend"]["mann_kendall_p"] <= 1.0);
+    CHECK(chart["trend"]["low"] <= chart["trend"]["per_week"]);
+    CHECK(json["pointers"][1]["charts"]["error_px"]["flag"].is_null());
+    CHECK(json["chart_rules"]["days_between_false_flags"] > 500.0);
+    CHECK(json["caution"].get<std::string>().find("does not diagnose") != std::string::npos);
 }
 
 TEST_CASE("the replay's screen and JSON tell the same") {
