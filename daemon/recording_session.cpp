@@ -83,6 +83,7 @@ void RecordingSession::restore() {
     }
     if (const auto id = m_parts.store.condition(m_condition)) {
         m_condition_id = *id;
+        m_labels[*id] = m_condition;
         m_recorder->set_condition(*id);
     } else {
         m_parts.log.warn("cannot take up the label \"{}\": {}, ignoring", m_condition,
@@ -236,10 +237,21 @@ void RecordingSession::tell_if_no_pointer() {
 void RecordingSession::mark(EventKind kind, std::string detail,
                             std::optional<store::PointerId> pointer) {
     if (m_waiting_events >= k_most_waiting_events) {
+        ++m_unmarked;
         return;
     }
     ++m_waiting_events;
     m_recorder->add_event({utc_now(), kind, pointer, std::move(detail)});
+}
+
+// What the next session takes up again from the store.
+void RecordingSession::mark_lasting() {
+    if (!m_condition.empty()) {
+        mark(EventKind::settings, std::string{k_condition_prefix} + m_condition);
+    }
+    if (m_paused) {
+        mark(EventKind::paused, std::string{k_by_request});
+    }
 }
 
 estimator::UtcTime RecordingSession::utc_now() const {
@@ -263,19 +275,6 @@ Result<void> RecordingSession::flush() {
     return written;
 }
 
-Result<void> RecordingSession::write() {
-    if (m_recorder->empty()) {
-        return {};
-    }
-    auto written = m_recorder->flush();
-    if (written) {
-        note_success();
-    } else if (written.error().code == ErrorCode::already_there) {
-        give_up_batch(written.error());
-    }
-    return written;
-}
-
 void RecordingSession::note_success() {
     if (m_write_failure) {
         m_parts.log.info("the store can be written again; what was kept is stored ({} single "
@@ -285,6 +284,10 @@ void RecordingSession::note_success() {
     m_write_failure.reset();
     m_failure_told.reset();
     m_waiting_events = 0;
+    if (const auto unmarked = std::exchange(m_unmarked, 0); unmarked > 0) {
+        mark(EventKind::lost_reports,
+             fmt::format("{} events were left out while the store could not be written", unmarked));
+    }
     m_scored_written = scored();
     prune_daily();
 }
@@ -297,16 +300,6 @@ void RecordingSession::note_failure(const Error& error) {
     m_failure_told = m_now.monotonic;
     m_parts.log.error("{}; the movements are kept in memory and written as soon as that works",
                       error.message);
-}
-
-// Such a batch can never be written, and would keep all later ones out.
-void RecordingSession::give_up_batch(const Error& error) {
-    m_parts.log.error("{}; this batch is left out", error.message);
-    m_left_out += scored() - m_scored_written;
-    m_scored_written = scored();
-    m_recorder->discard();
-    m_waiting_events = 0;
-    mark(EventKind::lost_reports, "a batch held movements that were stored already");
 }
 
 std::uint64_t RecordingSession::lost_movements() const {
@@ -421,6 +414,7 @@ Result<void> RecordingSession::label(const std::string& label) {
     interrupt_all(); // a movement belongs to one condition
     m_condition = label;
     m_condition_id = *id;
+    m_labels[*id] = label;
     m_recorder->set_condition(*id);
     mark(EventKind::settings, std::string{k_condition_prefix} + label);
     flush_in_time();

@@ -13,13 +13,15 @@
 #include <array>
 #include <bitset>
 #include <filesystem>
+#include <map>
 #include <optional>
 #include <spdlog/logger.h>
 #include <string>
 
 namespace sagitta::daemon {
 
-/// While the store cannot be written, this many gaps are kept beside the recorder's movements.
+/// While the store cannot be written, this many events are kept beside the recorder's movements;
+/// an event of its own then tells how many more there were.
 constexpr std::size_t k_most_waiting_events = 1000;
 
 class RecordingSession final : public ControlTarget {
@@ -73,7 +75,10 @@ private:
     void filter_feed();
     void mark(store::EventKind kind, std::string detail,
               std::optional<store::PointerId> pointer = std::nullopt);
+    void mark_lasting(); ///< the label and the pause that hold
     [[nodiscard]] estimator::Result<void> write();
+    [[nodiscard]] estimator::Result<void> replace_store();
+    [[nodiscard]] estimator::Result<void> renumber();
     void note_failure(const estimator::Error& error);
     void note_success();
     void give_up_batch(const estimator::Error& error);
@@ -100,6 +105,7 @@ private:
     std::bitset<estimator::k_max_pointers> m_waiting;
     std::string m_condition;
     store::ConditionId m_condition_id = store::k_unlabelled;
+    std::map<store::ConditionId, std::string> m_labels; ///< of the conditions taken up so far
 
     bool m_paused = false;
     bool m_session_active = true;
@@ -109,6 +115,8 @@ private:
     std::uint64_t m_earlier_presses = 0;
     std::uint64_t m_left_out = 0; ///< single movements that were never stored
     std::size_t m_waiting_events = 0;
+    std::size_t m_unmarked = 0; ///< events beyond k_most_waiting_events
+    bool m_store_damaged = false;
     std::optional<std::string> m_write_failure;
     std::optional<estimator::PointerTime> m_failure_told;
     std::uint64_t m_scored_written = 0; ///< of this recorder

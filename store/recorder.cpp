@@ -41,6 +41,36 @@ void Recorder::add_event(StoredEvent event) {
     }
 }
 
+void Recorder::renumber(const std::map<PointerId, PointerId>& pointers,
+                        const std::map<ConditionId, ConditionId>& conditions) {
+    const auto take_new = [](const auto& numbers, auto& id) {
+        if (const auto found = numbers.find(id); found != numbers.end()) {
+            id = found->second;
+        }
+    };
+    for (StoredMovement& movement : m_batch.movements) {
+        take_new(pointers, movement.pointer);
+        take_new(conditions, movement.condition);
+    }
+    for (StoredEvent& event : m_batch.events) {
+        if (event.pointer) {
+            take_new(pointers, *event.pointer);
+        }
+    }
+    std::map<HourKey, HourSummary> hours;
+    for (auto& [key, summary] : m_hours) {
+        auto [start, pointer, condition] = key;
+        take_new(pointers, pointer);
+        take_new(conditions, condition);
+        hours.emplace(HourKey{start, pointer, condition}, std::move(summary));
+    }
+    m_hours = std::move(hours);
+    for (PointerId& id : m_ids) {
+        take_new(pointers, id);
+    }
+    take_new(conditions, m_condition);
+}
+
 HourSummary& Recorder::hour(PointerIndex pointer, PointerTime time) {
     const auto start = std::chrono::floor<std::chrono::hours>(m_clock.to_utc(time));
     const HourKey key{start, m_ids[static_cast<std::size_t>(pointer)], m_condition};

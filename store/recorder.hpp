@@ -35,6 +35,10 @@ public:
     /// The offset for all that follows.
     void set_clock(estimator::ClockOffset offset);
     void add_event(StoredEvent event);
+    /// The store became a fresh one (Store::reopen): what waits and what follows takes its
+    /// numbers. Numbers that are not named stay.
+    void renumber(const std::map<PointerId, PointerId>& pointers,
+                  const std::map<ConditionId, ConditionId>& conditions);
 
     void on_movement(const estimator::Movement& movement) override;
     void on_exposure(const estimator::Exposure& exposure) override;

@@ -112,6 +112,18 @@ Result<void> record_set_aside(Store& store, const fs::path& aside, UtcTime now) 
     return store.append(batch);
 }
 
+std::unique_ptr<Store::Connection> connect(const fs::path& file, const struct stat& info,
+                                           Database database) {
+    return std::unique_ptr<Store::Connection>{new Store::Connection{.file = file,
+                                                                    .device = info.st_dev,
+                                                                    .inode = info.st_ino,
+                                                                    .database = std::move(database),
+                                                                    .insert_movement = {},
+                                                                    .find_hour = {},
+                                                                    .replace_hour = {},
+                                                                    .insert_event = {}}};
+}
+
 } // namespace
 
 Store::Store(std::unique_ptr<Connection> connection) : m_connection{std::move(connection)} {}
@@ -153,20 +165,30 @@ Result<Opened> Store::open(const fs::path& file, Mode mode, UtcTime now,
     if (stat(real.c_str(), &info) != 0) {
         return tl::unexpected{system_error("open", real.native(), errno)};
     }
-    Store store{std::unique_ptr<Connection>{new Connection{.file = real,
-                                                           .device = info.st_dev,
-                                                           .inode = info.st_ino,
-                                                           .database = std::move(*database),
-                                                           .insert_movement = {},
-                                                           .find_hour = {},
-                                                           .replace_hour = {},
-                                                           .insert_event = {}}}};
+    Store store{connect(real, info, std::move(*database))};
     if (aside) {
         if (auto recorded = record_set_aside(store, *aside, now); !recorded) {
             return tl::unexpected{recorded.error()};
         }
     }
     return Opened{std::move(store), std::move(aside)};
+}
+
+Result<std::optional<fs::path>> Store::reopen(UtcTime now, const OpenOptions& options) {
+    // Nobody may have a file open that is set aside. A database without tables, in memory, holds
+    // the place meanwhile: everything asked of it fails.
+    auto nothing = Database::open(":memory:", Database::Access::write, options.busy_timeout);
+    if (!nothing) {
+        return tl::unexpected{nothing.error()};
+    }
+    const fs::path file = m_connection->file;
+    m_connection = connect(file, {}, std::move(*nothing));
+    auto opened = open(file, Mode::read_write, now, options);
+    if (!opened) {
+        return tl::unexpected{opened.error()};
+    }
+    m_connection = std::move(opened->store.m_connection);
+    return std::move(opened->set_aside);
 }
 
 std::filesystem::path default_file() {

@@ -127,6 +127,12 @@ public:
     ///         program's SQLite file), damaged (reading), busy, no_space, io
     [[nodiscard]] static Result<Opened> open(const std::filesystem::path& file, Mode mode,
                                              UtcTime now, const OpenOptions& options = {});
+    /// Closes the file and opens it again for writing, as open() does: what to do after
+    /// ErrorCode::damaged, thoroughly. Pointers and conditions of a fresh file are numbered anew.
+    /// @return where a damaged file was put, when one was found; open()'s errors: the store then
+    ///         refuses everything until it is reopened
+    [[nodiscard]] Result<std::optional<std::filesystem::path>>
+    reopen(UtcTime now, const OpenOptions& options = {});
     Store(Store&&) noexcept;
     Store& operator=(Store&&) noexcept;
     ~Store();
