@@ -57,8 +57,11 @@ public:
     explicit DeskFeed(estimator::hand::Desk& desk) : m_desk{desk} {}
 
     estimator::Result<void> next(estimator::ReportBatch& batch) override {
-        return m_desk.next(batch);
+        auto read = m_desk.next(batch);
+        m_ended = batch.empty();
+        return read;
     }
+    [[nodiscard]] bool ended() const { return m_ended; }
     std::span<const estimator::PointerDescription> pointers() const override {
         return m_desk.pointers();
     }
@@ -78,6 +81,7 @@ public:
 private:
     estimator::hand::Desk& m_desk;
     std::size_t m_told = 0;
+    bool m_ended = false;
 };
 
 class DeskClocks final : public daemon::Clocks {
@@ -106,13 +110,14 @@ void record_weeks(const fs::path& folder, int weeks) {
     session.start(std::nullopt);
     session.turn(); // meets the pointers
 
-    std::printf("A recording of %d weeks of simulated work (with the simulation in it):\n", weeks);
+    std::printf(
+        "A recording of simulated work, weeks: %d (the simulation's own memory counts too):\n",
+        weeks);
     show("at the start", Memory::of(getpid()));
     auto flushed = clocks.read().realtime;
     auto day = std::chrono::floor<std::chrono::days>(flushed);
     int days = 0;
-    const auto end = (*desk)->end();
-    while (clocks.read().realtime < end) {
+    while (!feed.ended()) {
         session.turn();
         const auto now = clocks.read().realtime;
         if (now - flushed >= std::chrono::minutes{1}) {
@@ -121,7 +126,7 @@ void record_weeks(const fs::path& folder, int weeks) {
         }
         if (std::chrono::floor<std::chrono::days>(now) > day) {
             day = std::chrono::floor<std::chrono::days>(now);
-            if (++days == 1 || days % 7 == 5) {
+            if (++days % 7 == 1) {
                 show("after day " + std::to_string(days), Memory::of(getpid()));
             }
         }
@@ -170,11 +175,12 @@ void idle(const fs::path& folder, int seconds) {
 } // namespace
 
 int main(int argc, char** argv) {
-    const int weeks = argc > 1 ? std::atoi(argv[1]) : 2;
+    const int weeks = argc > 1 ? std::atoi(argv[1]) : 1;
     const int seconds = argc > 2 ? std::atoi(argv[2]) : 30;
     if (weeks < 1 || seconds < 1) {
         give_up("usage: bench_memory [WEEKS [IDLE_SECONDS]], each 1 or more");
     }
+    setvbuf(stdout, nullptr, _IOLBF, 0);
     const fs::path folder =
         fs::temp_directory_path() / ("sagitta-bench-memory-" + std::to_string(getpid()));
     fs::create_directories(folder);

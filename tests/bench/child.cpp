@@ -37,8 +37,7 @@ Cost measure(const std::function<void()>& child) {
         give_up("a measured process failed");
     }
     const std::chrono::duration<double> wall = std::chrono::steady_clock::now() - begin;
-    return {wall.count(), seconds(usage.ru_utime) + seconds(usage.ru_stime),
-            static_cast<double>(usage.ru_maxrss) / 1024.0, usage.ru_nvcsw, WEXITSTATUS(status)};
+    return {wall.count(), seconds(usage.ru_utime) + seconds(usage.ru_stime), WEXITSTATUS(status)};
 }
 
 Cost measure_program(const std::vector<std::string>& command) {

@@ -10,8 +10,6 @@ namespace sagitta::bench {
 struct Cost {
     double wall_s;
     double cpu_s; ///< user and system
-    double peak_mib;
-    long sleeps; ///< times that it gave up the processor to wait
     int exit_code;
 };
 
