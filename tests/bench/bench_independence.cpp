@@ -422,6 +422,10 @@ bool print_summary(const std::vector<std::vector<Row>>& table) {
 int main(int argc, char** argv) {
     const int count = argc > 1 ? std::atoi(argv[1]) : 1000;
     const bool all = argc > 2 && std::string_view{argv[2]} == "--all";
+    if (count < 10) {
+        std::fprintf(stderr, "usage: bench_independence [MOVEMENTS [--all]], 10 or more\n");
+        return 2;
+    }
     const std::vector<Task> tasks = make_tasks(count);
     const std::vector<Setup> setups = make_setups();
     std::vector<std::vector<Row>> table(measures().size());
