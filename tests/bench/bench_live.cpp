@@ -257,7 +257,7 @@ void show(const char* who, const Reading& reading, int seconds) {
 } // namespace
 
 int main(int argc, char** argv) {
-    const int seconds = argc > 1 ? std::atoi(argv[1]) : 10;
+    const int seconds = argc > 1 ? std::atoi(argv[1]) : 30;
     if (seconds < 1) {
         give_up("usage: bench_live [SECONDS], 1 or more");
     }
