@@ -20,7 +20,7 @@ constexpr std::size_t k_batch_events = 4096;
 template <std::size_t Bits>
 void set_byte(std::bitset<Bits>& bits, std::size_t first, std::uint8_t byte) {
     for (std::size_t i = 0; i < 8; ++i)
-        if (first + i < Bits && ((byte >> i) & 1u) != 0)
+        if (first + i < Bits && ((unsigned{byte} >> i) & 1U) != 0)
             bits.set(first + i);
 }
 
