@@ -261,9 +261,38 @@ estimator::Error with_what_stays(estimator::Error error, const ReplaySummary& do
     return error;
 }
 
+/// Looks at what was named before anything is made or moved: the first recording can be read, and a
+/// store that exists begins like one. (A damaged store is put aside; a recording named as the store
+/// by mistake must stay where it is.)
+Result<void> check_request(const ReplayRequest& request, const Session& session) {
+    if (!request.recordings.empty()) {
+        if (const auto first = input::open_recording(request.recordings.front()); !first) {
+            return tl::unexpected{first.error()};
+        }
+    }
+    std::error_code ignored;
+    if (!session.store_named || !std::filesystem::is_regular_file(session.store_file, ignored)) {
+        return {};
+    }
+    constexpr std::string_view k_magic = "SQLite format 3";
+    std::string begin(k_magic.size(), '\0');
+    std::ifstream file{session.store_file, std::ios::binary};
+    file.read(begin.data(), static_cast<std::streamsize>(begin.size()));
+    if (file.gcount() == static_cast<std::streamsize>(begin.size()) && begin != k_magic) {
+        return fail(ErrorCode::bad_format,
+                    fmt::format("{} is no store and stays as it is; name a store's file, or one "
+                                "that does not exist yet, after --store",
+                                session.store_file.string()));
+    }
+    return {};
+}
+
 } // namespace
 
 Result<Output> run_replay(const ReplayRequest& request, const Session& session) {
+    if (const auto checked = check_request(request, session); !checked) {
+        return tl::unexpected{checked.error()};
+    }
     ReplaySummary summary;
     std::optional<store::Store> store;
     std::string set_aside;

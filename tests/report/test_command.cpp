@@ -244,6 +244,17 @@ TEST_CASE("stamps that are no dates need --start to be stored") {
           std::string::npos);
 }
 
+TEST_CASE("a recording named as the store by mistake stays where it is, and no store is made") {
+    const Place place;
+    make_recording(place / "one.raw", k_start_us);
+    const auto swapped = place.run("replay --store one.raw one.raw");
+    CHECK(swapped.code == 1);
+    CHECK(swapped.err.find("one.raw is no store") != std::string::npos);
+    CHECK(std::filesystem::exists(place / "one.raw"));
+    CHECK(place.run("replay --store new.db nowhere.raw").code == 1);
+    CHECK_FALSE(std::filesystem::exists(place / "new.db"));
+}
+
 TEST_CASE("a bad recording is named and the ones before it stay") {
     const Place place;
     make_recording(place / "good.raw", k_start_us);
