@@ -10,6 +10,7 @@
 #include <exception>
 #include <fstream>
 #include <functional>
+#include <limits>
 #include <stdexcept>
 
 namespace {
@@ -48,7 +49,7 @@ struct Attempt {
 /// A stall of the emulator longer than this changes a movement's speed enough to move its start,
 /// and from 200 ms on (a rest) cuts it in two.
 constexpr std::int64_t k_stall_us = 40'000;
-constexpr int k_attempts = 4;
+constexpr int k_attempts = 3;
 
 class Test {
 public:
@@ -128,13 +129,15 @@ void Test::expect_keyboards_closed(const std::string& when) {
 }
 
 // An emulator that stalls tells nothing of the program under test, so a recording that was not sent
-// evenly is sent again, at most k_attempts times.
+// evenly is sent again, at most k_attempts times; the most even one counts.
 Attempt Test::send_evenly(const std::string& name, const std::string& node,
                           const std::string& recording, const std::function<void()>& send) {
     const auto guest_time = [&] {
         std::string time = m_machine.must_run("sleep 1; date -u +%Y-%m-%dT%H:%M:%SZ; sleep 1");
         return time.substr(0, time.find('\n'));
     };
+    Attempt best;
+    std::int64_t least_stall = std::numeric_limits<std::int64_t>::max();
     for (int i = 1;; ++i) {
         const std::string witness =
             m_guest.start_witness("events " + node + " /tmp/sent.raw", "/tmp/sent.out");
@@ -143,14 +146,19 @@ Attempt Test::send_evenly(const std::string& name, const std::string& node,
         attempt.to_utc = guest_time();
         m_guest.stop(witness);
         const std::string log = m_machine.fetch("/tmp/sent.raw");
-        attempt.kernel_log = (m_paths.machine.folder / ("kernel-" + recording)).string();
+        attempt.kernel_log =
+            (m_paths.machine.folder / ("kernel-" + std::to_string(i) + "-" + recording)).string();
         std::ofstream{attempt.kernel_log, std::ios::binary} << log;
         attempt.kernel = packets_of(log);
         const std::int64_t stall = stall_us(planned(recording), attempt.kernel);
         std::printf("sent to the %s: %zu packets, longest stall %.1f ms\n", name.c_str(),
                     attempt.kernel.size(), static_cast<double>(stall) / 1000.0);
-        if (stall <= k_stall_us || i == k_attempts) {
-            return attempt;
+        if (stall < least_stall) {
+            least_stall = stall;
+            best = std::move(attempt);
+        }
+        if (least_stall <= k_stall_us || i == k_attempts) {
+            return best;
         }
         std::printf("    the emulator stalled; sent again\n");
     }
@@ -208,6 +216,16 @@ void Test::compare(const std::string& name, const std::string& pointer, const At
         rows_of(m_guest.exported(k_store, "--pointer '" + pointer + "' --from " + attempt.from_utc +
                                               " --to " + attempt.to_utc));
     const std::string& sent = attempt.recording;
+    // From a stall of a rest's length on, a movement falls in two, whoever records it.
+    constexpr std::int64_t k_judged_stall_us = 120'000;
+    const std::int64_t stall = stall_us(packets_of(read_file(sent)), attempt.kernel);
+    if (stall > k_judged_stall_us) {
+        std::printf("the emulator stalled for %.0f ms: the movements of the %s are judged by the "
+                    "kernel's record alone\n",
+                    static_cast<double>(stall) / 1000.0, name.c_str());
+        compare_with_replay(m_checks, name, replayed(attempt.kernel_log), found);
+        return;
+    }
     compare_with_sent(m_checks, {name, packets_of(read_file(sent)), replayed(sent)}, attempt.kernel,
                       found);
     compare_with_replay(m_checks, name, replayed(attempt.kernel_log), found);
